@@ -1,0 +1,1 @@
+//! What leaves the program: one writer a file, each to a string.

@@ -1,0 +1,1 @@
+//! Exact combinatorics without a domain: cliques, covering, satisfiability.
