@@ -81,6 +81,11 @@ impl<'a> Effort<'a> {
         Ok(())
     }
 
+    /// The stop signal that this effort listens to.
+    pub fn stop(&self) -> Stop {
+        self.stop.clone()
+    }
+
     /// Steps still to be had.
     pub fn left(&self) -> u64 {
         if self.stop.raised() { 0 } else { self.left.get() }

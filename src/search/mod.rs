@@ -1,1 +1,3 @@
 //! Exact combinatorics without a domain: cliques, covering, satisfiability.
+
+pub mod sat;
