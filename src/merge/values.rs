@@ -54,36 +54,91 @@ pub struct Pair {
     pub a: Row,
     /// The higher row.
     pub b: Row,
-    /// Pairs (lower, higher) that must be merged with this one, each with the first column that asks for it; in order,
-    /// without repeats. Left empty for a conflict.
+    /// Pairs (lower, higher) that must be merged with this one, each with the first column, in text order, that asks
+    /// for it; in order, without repeats. Left empty for a conflict.
     pub implies: Vec<((Row, Row), Column)>,
     /// What was found.
     pub verdict: Verdict,
 }
 
 /// The implication table: all pairs `(a, b)` with `a < b`, in the order of `b`, then `a`.
+///
+/// A table of 1,000 rows has half a million squares, and what they imply can be a hundred times as much. The table
+/// therefore keeps the verdicts and a copy of the next rows; what a pair implies is looked up when it is asked for.
 #[derive(Debug, Clone, PartialEq, Eq, Default)]
 pub struct PairTable {
     /// Number of rows.
     pub rows: usize,
-    /// The squares; see [`PairTable::get`].
-    pub pairs: Vec<Pair>,
     /// Number of rounds in which something was struck.
     pub passes: usize,
+    inputs: usize,
+    next: Vec<Option<Row>>,
+    verdicts: Vec<Verdict>,
 }
 
 impl PairTable {
-    /// The square of two different rows, in any order.
-    pub fn get(&self, a: Row, b: Row) -> &Pair {
+    /// The table of `rows` rows with the given verdicts, one for each pair in the order of [`PairTable::index`], for
+    /// a flow table with these next rows.
+    pub fn new(table: &FlowTable, verdicts: Vec<Verdict>, passes: usize) -> Self {
+        debug_assert_eq!(verdicts.len(), table.len() * table.len().saturating_sub(1) / 2);
+        let next = table.rows().flat_map(|r| table.row_cells(r).iter().map(|cell| cell.next)).collect();
+        PairTable { rows: table.len(), passes, inputs: table.inputs, next, verdicts }
+    }
+
+    /// Where the square of two different rows stands, in any order of the two.
+    pub fn index(a: Row, b: Row) -> usize {
         let (lo, hi) = (a.min(b).at(), a.max(b).at());
         debug_assert!(lo != hi);
-        &self.pairs[hi * (hi - 1) / 2 + lo]
+        hi * (hi - 1) / 2 + lo
+    }
+
+    /// What was found for two different rows, in any order.
+    pub fn verdict(&self, a: Row, b: Row) -> Verdict {
+        self.verdicts[Self::index(a, b)]
     }
 
     /// Whether two rows are compatible. A row is compatible with itself.
     pub fn compatible(&self, a: Row, b: Row) -> bool {
-        a == b || self.get(a, b).verdict == Verdict::Compatible
+        a == b || self.verdict(a, b) == Verdict::Compatible
     }
+
+    /// Pairs (lower, higher) that must be merged with two different rows, each with the first column, in text order,
+    /// that asks for it; in order, without repeats. Empty for a conflict.
+    pub fn implies(&self, a: Row, b: Row) -> Vec<((Row, Row), Column)> {
+        if matches!(self.verdict(a, b), Verdict::Conflict(_)) {
+            return Vec::new();
+        }
+        let own = (a.min(b), a.max(b));
+        let cells = |r: Row| &self.next[r.at() << self.inputs..(r.at() + 1) << self.inputs];
+        let (of_a, of_b) = (cells(a), cells(b));
+        let mut found: Vec<((Row, Row), Column)> = columns_in_text_order(self.inputs)
+            .filter_map(|c| {
+                let (p, q) = (of_a[c.at()]?, of_b[c.at()]?);
+                let pair = (p.min(q), p.max(q));
+                (p != q && pair != own).then_some((pair, c))
+            })
+            .collect();
+        // The sort is stable: of one pair's columns the first in text order stays in front and survives.
+        found.sort_by_key(|&(pair, _)| pair);
+        found.dedup_by_key(|&mut (pair, _)| pair);
+        found
+    }
+
+    /// The square of two different rows, in any order.
+    pub fn get(&self, a: Row, b: Row) -> Pair {
+        let (a, b) = (a.min(b), a.max(b));
+        Pair { a, b, implies: self.implies(a, b), verdict: self.verdict(a, b) }
+    }
+
+    /// All squares, in the order of the higher row, then the lower.
+    pub fn iter(&self) -> impl Iterator<Item = Pair> + '_ {
+        (1..self.rows).flat_map(move |b| (0..b).map(move |a| self.get(Row::new(a), Row::new(b))))
+    }
+}
+
+/// All columns in the order of their bit strings, in which the first input counts most.
+pub fn columns_in_text_order(inputs: usize) -> impl Iterator<Item = Column> {
+    (0..1u32 << inputs).map(move |rank| Column((rank.reverse_bits() >> 1 >> (31 - inputs)) as u16))
 }
 
 /// What is wrong with a cover by hand.
@@ -148,18 +203,23 @@ pub struct Merged {
     /// For each maximal compatible, the sets of rows (two or more, not inside the compatible itself, none inside
     /// another) that closure asks to lie together.
     pub class_sets: Vec<Vec<RowSet>>,
-    /// The chosen closed cover, in row order of its sets.
+    /// The chosen closed cover, in row order of its sets (sets compared as ascending lists). A cover by hand stays in
+    /// the user's order.
     pub cover: Vec<RowSet>,
     /// Further smallest covers, as far as asked for.
     pub further: Vec<Vec<RowSet>>,
     /// What is wrong with the cover; only a cover by hand can have faults, and then `reduced` is `None`.
     pub faults: Vec<CoverFault>,
-    /// Rows that are pairwise incompatible: no cover can be smaller than this.
+    /// Rows of which no two fit in one set, so that no cover can be smaller than this. They are pairwise incompatible;
+    /// with bursts, two compatible rows also count where no set may hold them both because it would leave a burst.
     pub clique: Vec<Row>,
     /// Proved lower bound on the number of sets.
     pub lower_bound: usize,
     /// Whether the number of sets is smallest. Also true for a cover by hand that happens to be.
     pub bound: Bound,
+    /// Whether the cover is also proved best among the smallest: fewest members in total, then first in row order.
+    /// Also true for a cover by hand, for which nothing is chosen.
+    pub tie_proved: bool,
     /// The reduced table.
     pub reduced: Option<Reduced>,
 }
