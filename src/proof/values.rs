@@ -80,21 +80,34 @@ pub struct Trap {
     pub codes: Vec<Code>,
 }
 
+/// How many mismatches, hazards and traps a [`Proof`] lists of each; the rest is counted.
+pub const LISTED: usize = 100;
+
 /// What the proof found.
 #[derive(Debug, Clone, PartialEq, Eq, Default)]
 pub struct Proof {
-    /// Disagreements between primitive table, reduced table and functions.
+    /// Disagreements between primitive table, reduced table and functions: the first [`LISTED`].
     pub mismatches: Vec<Mismatch>,
+    /// Disagreements beyond those listed.
+    pub more_mismatches: usize,
     /// Moves of the reduced table (each start code counted) that were followed.
     pub moves_checked: usize,
-    /// Glitches.
+    /// Glitches: the first [`LISTED`].
     pub hazards: Vec<HazardFound>,
+    /// Glitches beyond those listed.
+    pub more_hazards: usize,
     /// State variables whose feedback must be slower than the direct logic, by number from 0.
     pub slow: Vec<usize>,
-    /// Where power-up can trap the controller. Not a failure of the proof: a reset mends it.
+    /// Where power-up can trap the controller: the first [`LISTED`] by column and code. Not a failure of the proof: a
+    /// reset mends it.
     pub traps: Vec<Trap>,
+    /// Traps beyond those listed.
+    pub more_traps: usize,
     /// Total states tried at power-up.
     pub power_up_states: usize,
+    /// Whether every total state was tried with every order of changes; otherwise bits changed one at a time or all
+    /// together, and beyond 2^20 total states only from codes near those in use.
+    pub power_up_exact: bool,
 }
 
 impl Proof {
