@@ -7,6 +7,7 @@ use crate::codes::values::Coded;
 use crate::gates::values::Cost;
 use crate::logic::values::Equations;
 use crate::merge::values::Merged;
+use crate::project::choices::{Form, Method, Shape};
 use crate::proof::values::{Proof, Races};
 use crate::spec::values::Spec;
 
@@ -44,4 +45,17 @@ impl Design {
             && self.equations.as_ref().is_some_and(|e| e.clashes.is_empty())
             && self.proof.as_ref().is_some_and(|p| p.holds())
     }
+}
+
+/// A design of the same project with other choices, for comparing.
+#[derive(Debug, Clone)]
+pub struct Alternative {
+    /// The assignment method.
+    pub method: Method,
+    /// Form of the excitation.
+    pub form: Form,
+    /// Shape of every function.
+    pub shape: Shape,
+    /// What came of it.
+    pub design: Design,
 }
