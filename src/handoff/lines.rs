@@ -2,103 +2,72 @@
 //!
 //! Down to the entries of a stage's lists everything has its own line; inside an entry it stays on that line. A
 //! thousand pairs are then a thousand lines, and a difference between two records shows the pair that changed.
-
-use std::io;
+//! Linear in the length of the text.
 
 use serde::Serialize;
-use serde_json::ser::Formatter;
 
 /// Brackets nested deeper than this are written on one line.
 const DEPTH: usize = 3;
 
 /// The value as JSON with a newline at the end. `None` only if the value refuses to be serialised.
 pub fn to_lines(value: &impl Serialize) -> Option<String> {
-    let mut bytes = Vec::new();
-    let mut writer = serde_json::Serializer::with_formatter(&mut bytes, Lines::default());
-    value.serialize(&mut writer).ok()?;
-    bytes.push(b'\n');
-    String::from_utf8(bytes).ok()
+    serde_json::to_string(value).ok().map(|text| broken(&text))
 }
 
-#[derive(Default)]
-struct Lines {
-    depth: usize,
-    filled: bool,
-}
-
-impl Lines {
-    fn open<W: ?Sized + io::Write>(&mut self, writer: &mut W, bracket: &[u8]) -> io::Result<()> {
-        self.depth += 1;
-        self.filled = false;
-        writer.write_all(bracket)
-    }
-
-    fn close<W: ?Sized + io::Write>(&mut self, writer: &mut W, bracket: &[u8]) -> io::Result<()> {
-        self.depth -= 1;
-        if self.filled && self.depth < DEPTH {
-            self.newline(writer)?;
+/// Compact JSON, broken into lines.
+fn broken(compact: &str) -> String {
+    let mut out = String::with_capacity(compact.len() + compact.len() / 4);
+    let mut chars = compact.chars().peekable();
+    let (mut depth, mut quoted, mut escaped) = (0, false, false);
+    while let Some(c) = chars.next() {
+        if quoted {
+            out.push(c);
+            quoted = escaped || c != '"';
+            escaped = c == '\\' && !escaped;
+            continue;
         }
-        self.filled = true;
-        writer.write_all(bracket)
-    }
-
-    fn next<W: ?Sized + io::Write>(&mut self, writer: &mut W, first: bool) -> io::Result<()> {
-        if self.depth <= DEPTH {
-            if !first {
-                writer.write_all(b",")?;
+        match c {
+            '"' => {
+                out.push(c);
+                quoted = true;
             }
-            self.newline(writer)
-        } else if first {
-            Ok(())
-        } else {
-            writer.write_all(b", ")
+            '[' | '{' => {
+                out.push(c);
+                depth += 1;
+                // An empty list or map stays together.
+                if let Some(end) = chars.next_if(|&next| matches!(next, ']' | '}')) {
+                    depth -= 1;
+                    out.push(end);
+                } else if depth <= DEPTH {
+                    newline(&mut out, depth);
+                }
+            }
+            ']' | '}' => {
+                depth -= 1;
+                if depth < DEPTH {
+                    newline(&mut out, depth);
+                }
+                out.push(c);
+            }
+            ',' => {
+                out.push(c);
+                if depth <= DEPTH {
+                    newline(&mut out, depth);
+                } else {
+                    out.push(' ');
+                }
+            }
+            ':' => out.push_str(": "),
+            _ => out.push(c),
         }
     }
-
-    fn newline<W: ?Sized + io::Write>(&self, writer: &mut W) -> io::Result<()> {
-        writer.write_all(b"\n")?;
-        (0..self.depth).try_for_each(|_| writer.write_all(b"  "))
-    }
+    out.push('\n');
+    out
 }
 
-impl Formatter for Lines {
-    fn begin_array<W: ?Sized + io::Write>(&mut self, writer: &mut W) -> io::Result<()> {
-        self.open(writer, b"[")
-    }
-
-    fn end_array<W: ?Sized + io::Write>(&mut self, writer: &mut W) -> io::Result<()> {
-        self.close(writer, b"]")
-    }
-
-    fn begin_array_value<W: ?Sized + io::Write>(&mut self, writer: &mut W, first: bool) -> io::Result<()> {
-        self.next(writer, first)
-    }
-
-    fn end_array_value<W: ?Sized + io::Write>(&mut self, _: &mut W) -> io::Result<()> {
-        self.filled = true;
-        Ok(())
-    }
-
-    fn begin_object<W: ?Sized + io::Write>(&mut self, writer: &mut W) -> io::Result<()> {
-        self.open(writer, b"{")
-    }
-
-    fn end_object<W: ?Sized + io::Write>(&mut self, writer: &mut W) -> io::Result<()> {
-        self.close(writer, b"}")
-    }
-
-    fn begin_object_key<W: ?Sized + io::Write>(&mut self, writer: &mut W, first: bool) -> io::Result<()> {
-        self.next(writer, first)
-    }
-
-    fn begin_object_value<W: ?Sized + io::Write>(&mut self, writer: &mut W) -> io::Result<()> {
-        writer.write_all(b": ")
-    }
-
-    fn end_object_value<W: ?Sized + io::Write>(&mut self, _: &mut W) -> io::Result<()> {
-        self.filled = true;
-        Ok(())
-    }
+fn newline(out: &mut String, depth: usize) {
+    out.push('\n');
+    (0..depth).for_each(|_| out.push_str("  "));
 }
 
 #[cfg(test)]
@@ -114,6 +83,13 @@ mod tests {
             text,
             "{\n  \"none\": [],\n  \"one\": {\n    \"list\": [\n      {\"a\": [1, 2], \"b\": {}},\n      3\n    ]\n  }\n}\n"
         );
+    }
+
+    #[test]
+    fn brackets_and_quotes_inside_strings_are_left_alone() {
+        let value = json!({"a\\": ["{\"x\": [1,2]}", "\\", ",\n\"", {"k:": "]"}]});
+        let text = to_lines(&value).expect("serialises");
         assert_eq!(serde_json::from_str::<serde_json::Value>(&text).expect("parses"), value);
+        assert_eq!(text.lines().count(), 8);
     }
 }

@@ -13,7 +13,7 @@ use crate::gates::values::Cost;
 use crate::handoff::lines::to_lines;
 use crate::handoff::words::reasons;
 use crate::logic::values::{Equations, EssentialHazard};
-use crate::merge::values::{Merged, Pair, Reduced, RowSet, Verdict};
+use crate::merge::values::{Merged, Pair, PairTable, Reduced, RowSet, Verdict};
 use crate::project::Project;
 use crate::project::choices::Discipline;
 use crate::proof::values::{Proof, RaceKind, Races};
@@ -106,7 +106,7 @@ struct TotalStatePart<'a> {
 
 #[derive(Serialize)]
 struct MergingPart<'a> {
-    pairs: Vec<PairPart<'a>>,
+    pairs: Pairs<'a>,
     maximal_compatibles: Vec<Vec<&'a str>>,
     /// Whether the list before is complete; there can be more than anyone could list.
     maximal_complete: bool,
@@ -156,7 +156,7 @@ fn merging<'a>(spec: &'a Spec, merged: &'a Merged) -> MergingPart<'a> {
     let table = &spec.table;
     let reduced = merged.reduced.as_ref();
     MergingPart {
-        pairs: merged.pairs.pairs.iter().map(|p| pair(spec, p)).collect(),
+        pairs: Pairs(spec, &merged.pairs),
         maximal_compatibles: merged.maximal.iter().map(|s| names_of(table, s)).collect(),
         maximal_complete: merged.maximal_complete,
         cover: merged.cover.iter().map(|s| names_of(table, s)).collect(),
@@ -172,6 +172,15 @@ fn merging<'a>(spec: &'a Spec, merged: &'a Merged) -> MergingPart<'a> {
             row: r.table.name(r.initial.row),
             column: r.table.column_text(r.initial.column),
         }),
+    }
+}
+
+/// The squares of the implication table, made one by one while they are written: there can be half a million.
+struct Pairs<'a>(&'a Spec, &'a PairTable);
+
+impl Serialize for Pairs<'_> {
+    fn serialize<S: Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
+        serializer.collect_seq(self.1.iter().map(|p| pair(self.0, &p)))
     }
 }
 

@@ -30,13 +30,20 @@ fn implication_table(page: &mut Page, spec: &Spec, pairs: &PairTable) {
         page.text("One row: nothing to merge.");
         return;
     }
-    let count = |is: fn(&Verdict) -> bool| pairs.pairs.iter().filter(|p| is(&p.verdict)).count();
+    let mut counts = [0; 3];
+    for pair in table_pairs(&spec.table) {
+        counts[match pairs.verdict(pair.0, pair.1) {
+            Verdict::Compatible => 0,
+            Verdict::Conflict(_) => 1,
+            Verdict::Struck { .. } => 2,
+        }] += 1;
+    }
     page.text(&format!(
         "Implication table: {}, {} compatible, {} with contradicting outputs, {} struck in {}.",
-        counted(pairs.pairs.len(), "pair", "pairs"),
-        count(|v| matches!(v, Verdict::Compatible)),
-        count(|v| matches!(v, Verdict::Conflict(_))),
-        count(|v| matches!(v, Verdict::Struck { .. })),
+        counted(counts.iter().sum(), "pair", "pairs"),
+        counts[0],
+        counts[1],
+        counts[2],
         counted(pairs.passes, "pass", "passes"),
     ));
     if pairs.rows <= TRIANGLE {
@@ -52,13 +59,18 @@ fn implication_table(page: &mut Page, spec: &Spec, pairs: &PairTable) {
     }
 }
 
+fn table_pairs(table: &FlowTable) -> impl Iterator<Item = (Row, Row)> + use<> {
+    let rows = table.len();
+    (1..rows).flat_map(|b| (0..b).map(move |a| (Row::new(a), Row::new(b))))
+}
+
 /// One character for each pair, rows numbered.
 fn triangle(page: &mut Page, table: &FlowTable, pairs: &PairTable) {
     let last = pairs.rows - 1;
     let mut lines: Vec<Vec<String>> = Vec::new();
     for b in 1..pairs.rows {
         let row = Row::new(b);
-        let marks = (0..b).map(|a| mark(pairs.get(Row::new(a), row)).to_owned());
+        let marks = (0..b).map(|a| mark(&pairs.get(Row::new(a), row)).to_owned());
         lines.push([(b + 1).to_string(), table.name(row).to_owned()].into_iter().chain(marks).collect());
     }
     let numbers = (0..last).map(|a| (a + 1).to_string());
@@ -83,11 +95,11 @@ fn mark(pair: &Pair) -> &'static str {
 fn reasons(page: &mut Page, spec: &Spec, pairs: &PairTable) {
     let table = &spec.table;
     let mut lines: Vec<(String, String)> = Vec::new();
-    for pair in &pairs.pairs {
+    for pair in pairs.iter() {
         let text = match pair.verdict {
-            Verdict::Compatible if !pair.implies.is_empty() => format!("? implies {}", implied(table, pair)),
+            Verdict::Compatible if !pair.implies.is_empty() => format!("? implies {}", implied(table, &pair)),
             Verdict::Struck { by, pass } => {
-                format!("/ in pass {pass}, by {}; implies {}", pair_text(table, by), implied(table, pair))
+                format!("/ in pass {pass}, by {}; implies {}", pair_text(table, by), implied(table, &pair))
             }
             _ => continue,
         };
@@ -105,7 +117,7 @@ fn reasons(page: &mut Page, spec: &Spec, pairs: &PairTable) {
 /// The contradictions, gathered by output and column.
 fn conflicts(page: &mut Page, spec: &Spec, pairs: &PairTable) {
     let mut places: BTreeMap<(usize, Option<String>), Vec<String>> = BTreeMap::new();
-    for pair in &pairs.pairs {
+    for pair in pairs.iter() {
         if let Verdict::Conflict(conflict) = pair.verdict {
             let place = (conflict.output, conflict.column.map(|c| spec.table.column_text(c)));
             places.entry(place).or_default().push(pair_text(&spec.table, (pair.a, pair.b)));
@@ -138,9 +150,8 @@ fn partners(page: &mut Page, table: &FlowTable, pairs: &PairTable) {
         let texts: Vec<String> = table
             .rows()
             .skip(a.at() + 1)
-            .map(|b| (b, pairs.get(a, b)))
-            .filter(|(_, p)| p.verdict == Verdict::Compatible)
-            .map(|(b, p)| format!("{}{}", table.name(b), if p.implies.is_empty() { "" } else { "?" }))
+            .filter(|&b| pairs.compatible(a, b))
+            .map(|b| format!("{}{}", table.name(b), if pairs.implies(a, b).is_empty() { "" } else { "?" }))
             .collect();
         if !texts.is_empty() {
             page.lines(wrap(&format!("  {}: ", table.name(a)), "      ", &texts.join(", ")));
@@ -150,8 +161,11 @@ fn partners(page: &mut Page, table: &FlowTable, pairs: &PairTable) {
 
 /// What the compatible pairs of a large table imply.
 fn conditions(page: &mut Page, table: &FlowTable, pairs: &PairTable) {
-    let bound: Vec<&Pair> =
-        pairs.pairs.iter().filter(|p| p.verdict == Verdict::Compatible && !p.implies.is_empty()).collect();
+    let bound: Vec<Pair> = table_pairs(table)
+        .filter(|&(a, b)| pairs.compatible(a, b))
+        .map(|(a, b)| pairs.get(a, b))
+        .filter(|p| !p.implies.is_empty())
+        .collect();
     if bound.is_empty() {
         return;
     }
