@@ -2,8 +2,10 @@
 
 use std::collections::BTreeMap;
 
+use serde::Deserialize;
+
 /// How the inputs may change.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, Default)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, Default, Deserialize)]
 pub enum Discipline {
     /// One input bit at a time.
     #[default]
@@ -13,7 +15,7 @@ pub enum Discipline {
 }
 
 /// Whether outputs belong to cells or to rows.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, Default)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, Default, Deserialize)]
 pub enum OutputStyle {
     /// Outputs of a cell depend on row and column.
     #[default]
@@ -87,7 +89,7 @@ pub struct CodesChoice {
 }
 
 /// Form of the excitation.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, Default)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, Default, Deserialize)]
 pub enum Form {
     /// `Y = f(x, y)`, fed back.
     #[default]
@@ -113,7 +115,7 @@ impl Form {
 }
 
 /// Two-level shape of the functions.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, Default)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, Default, Deserialize)]
 pub enum Shape {
     /// Sum of products.
     #[default]
@@ -149,7 +151,7 @@ pub struct LogicChoice {
 }
 
 /// Gate library style.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, Default)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, Default, Deserialize)]
 pub enum Style {
     /// AND and OR gates with inverters.
     #[default]

@@ -3,8 +3,33 @@
 //! [`Project`] mirrors the file field by field. It speaks in names and bit strings, not in indices, so that a
 //! project with a mistake in it (an unknown next row, a missing stable cell) can still be opened, saved and mended:
 //! [`spec`](crate::spec) turns it into a table and says what is wrong.
+//!
+//! | to | use |
+//! | --- | --- |
+//! | open a file | [`read`], which enforces [`limits`] while it parses |
+//! | save | [`write`], canonical: what it wrote reads back equal, and is then written the same, byte for byte |
+//! | change something | [`Edit::apply`], a pure function from a project to the next |
+//! | change with undo | [`History`] |
+//!
+//! Comments in a file are for people who write it by hand. They are not part of the project: saving drops them.
+//!
+//! [`read`] and [`write`] take time and memory linear in the file, an edit linear in the project.
 
 pub mod choices;
+
+mod bounds;
+mod edit;
+mod edit_rows;
+mod edit_signals;
+mod explain;
+mod file;
+mod history;
+mod limited;
+mod pretty;
+mod write;
+
+#[cfg(test)]
+mod arbitrary;
 
 use std::collections::BTreeMap;
 
@@ -13,10 +38,17 @@ pub use choices::{
     OutputStyle, Shape, Style,
 };
 
+pub use bounds::fits;
+pub use edit::{Edit, EditError};
+pub use explain::ReadError;
+pub use file::read;
+pub use history::History;
+pub use write::write;
+
 /// The project format that this program reads and writes.
 pub const FORMAT: u32 = 1;
 
-/// What a project may hold at most. Anything beyond is refused when the file is read.
+/// What a project may hold at most. Anything beyond is refused when the file is read, and by every edit.
 pub mod limits {
     /// Rows of the primitive table.
     pub const ROWS: usize = 1024;
@@ -26,10 +58,20 @@ pub mod limits {
     pub const OUTPUTS: usize = 32;
     /// Inputs plus state variables of the encoded design.
     pub const VARIABLES: usize = 24;
-    /// Characters of a name.
+    /// Characters of a name, and of any other string for which no limit of its own stands here.
     pub const NAME: usize = 64;
+    /// Characters of the title.
+    pub const TITLE: usize = 256;
+    /// Characters of the notes.
+    pub const NOTES: usize = 1 << 16;
+    /// Cells of one row.
+    pub const CELLS: usize = 1 << INPUTS;
     /// Scenarios, and steps of one scenario.
     pub const SCENARIOS: usize = 1024;
+    /// Largest fan-in of a gate that may be asked for; the smallest is 2.
+    pub const FAN_IN: u8 = 64;
+    /// Largest delay of a gate, in the user's time unit. Delays are finite and not negative.
+    pub const DELAY: f64 = 1e9;
     /// Bytes of a file.
     pub const FILE_BYTES: usize = 16 << 20;
     /// Nesting of brackets in a file.
