@@ -1,6 +1,6 @@
 //! Plain values of the specification: the flow table and what the checks made of it. No algorithm lives here.
 
-use crate::base::{Column, Outputs, Row, TotalState};
+use crate::base::{Column, Finding, Outputs, Row, TotalState};
 use crate::project::choices::Discipline;
 
 /// Names of the signals.
@@ -141,4 +141,13 @@ pub struct Spec {
     pub reachable: Vec<(TotalState, usize)>,
     /// Open questions, soonest met first.
     pub questions: Vec<Question>,
+}
+
+/// What the checks made of a project.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Checked {
+    /// What is wrong or open, errors first.
+    pub findings: Vec<Finding>,
+    /// The table to derive from; there exactly if no finding is an error.
+    pub spec: Option<Spec>,
 }
