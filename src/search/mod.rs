@@ -1,3 +1,4 @@
 //! Exact combinatorics without a domain: cliques, covering, satisfiability.
 
+pub mod cover;
 pub mod sat;
