@@ -9,7 +9,7 @@ use crate::logic::cubes::gather;
 use crate::logic::expand::{Expander, Rules};
 use crate::logic::minimise::{Fence, Problem};
 use crate::logic::table::{Fault, Span, Table};
-use crate::logic::values::{Cube, Phase, Privileged, Target, Transition, mask};
+use crate::logic::values::{Cube, Privileged, Target, Transition, mask};
 use crate::project::choices::Shape;
 
 /// What a function must be at a point.
