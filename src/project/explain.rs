@@ -40,7 +40,7 @@ impl ReadError {
         ReadError { line, column: col, text: words }
     }
 
-    /// An error at the end of the text before `text_end`.
+    /// An error right after the text that stands before it.
     pub(super) fn after(valid: &str, text: String) -> Self {
         let Position { line, col } = place_of_end(valid);
         ReadError { line, column: col, text }

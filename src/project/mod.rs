@@ -30,6 +30,8 @@ mod write;
 
 #[cfg(test)]
 mod arbitrary;
+#[cfg(test)]
+mod edit_tests;
 
 use std::collections::BTreeMap;
 
