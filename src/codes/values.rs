@@ -104,6 +104,9 @@ pub struct Coded {
     pub bound: Bound,
     /// Steps of the longest way (0 if there is no way).
     pub longest_path: usize,
+    /// With this number of bits: whether the number of spare codes, and with it the longest way, is smallest. Claimed by
+    /// adjacency and shared row only; elsewhere it is `Proved` in the sense of the construction.
+    pub tidy: Bound,
 }
 
 impl Coded {
