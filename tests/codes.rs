@@ -68,7 +68,7 @@ impl Dice {
         for column in table.columns() {
             let stable: Vec<usize> =
                 (0..rows).filter(|&r| home[r] == column.at() || self.roll(crowd) == 0).collect();
-            for r in 0..rows {
+            for (r, &held) in fixed.iter().enumerate() {
                 let next = if stable.contains(&r) {
                     Some(r)
                 } else if stable.is_empty() || self.roll(6) < holes {
@@ -77,7 +77,7 @@ impl Dice {
                     Some(stable[self.roll(stable.len())])
                 };
                 let value = match style {
-                    OutputStyle::PerRow => fixed[r],
+                    OutputStyle::PerRow => held,
                     OutputStyle::PerCell if self.roll(3) == 0 => self.roll(3),
                     OutputStyle::PerCell => 0,
                 };
