@@ -178,6 +178,7 @@ impl Hand {
                 ways,
                 encoded,
                 bound: Bound::Proved,
+                tidy: Bound::Proved,
             },
             reduced: Reduced {
                 table,
