@@ -99,6 +99,7 @@ fn assemble(
         encoded,
         initial: codes[initial.row.at()],
         bound: Bound::Proved,
+        tidy: Bound::Proved,
         longest_path: 1,
     };
     Design { spec, reduced: Reduced { table, members, initial, moves, outputs: style }, coded }
