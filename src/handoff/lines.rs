@@ -90,6 +90,6 @@ mod tests {
         let value = json!({"a\\": ["{\"x\": [1,2]}", "\\", ",\n\"", {"k:": "]"}]});
         let text = to_lines(&value).expect("serialises");
         assert_eq!(serde_json::from_str::<serde_json::Value>(&text).expect("parses"), value);
-        assert_eq!(text.lines().count(), 8);
+        assert_eq!(text.lines().count(), 10);
     }
 }

@@ -436,7 +436,12 @@ struct ProofPart<'a> {
     needs_slow_feedback: Vec<String>,
     power_up_traps: Vec<TrapPart>,
     power_up_states: usize,
+    power_up_exact: bool,
     mismatches: Vec<MismatchPart<'a>>,
+    /// What was found beyond the lists.
+    more_hazards: usize,
+    more_power_up_traps: usize,
+    more_mismatches: usize,
 }
 
 #[derive(Serialize)]
@@ -492,7 +497,11 @@ fn proof<'a>(reduced: &'a Reduced, coded: &Coded, proof: &'a Proof) -> ProofPart
             })
             .collect(),
         power_up_states: proof.power_up_states,
+        power_up_exact: proof.power_up_exact,
         mismatches: proof.mismatches.iter().map(|m| MismatchPart { stage: m.stage, text: &m.text }).collect(),
+        more_hazards: proof.more_hazards,
+        more_power_up_traps: proof.more_traps,
+        more_mismatches: proof.more_mismatches,
     }
 }
 

@@ -13,7 +13,9 @@ use crate::spec::values::{FlowTable, Spec};
 /// Up to this many rows the implication table is drawn as a triangle.
 const TRIANGLE: usize = 20;
 /// Longest list of sets that is written out.
-const LIST: usize = 100;
+const LIST: usize = 40;
+/// Widest text of a pair that gets a column of its own.
+const SHORT: usize = 24;
 
 pub fn write(page: &mut Page, spec: &Spec, merged: &Merged) {
     page.section("Merging");
@@ -97,18 +99,26 @@ fn reasons(page: &mut Page, spec: &Spec, pairs: &PairTable) {
     let mut lines: Vec<(String, String)> = Vec::new();
     for pair in pairs.iter() {
         let text = match pair.verdict {
-            Verdict::Compatible if !pair.implies.is_empty() => format!("? implies {}", implied(table, &pair)),
+            Verdict::Compatible if !pair.implies.is_empty() => {
+                format!("? implies {}", implied(table, &pair, None))
+            }
             Verdict::Struck { by, pass } => {
-                format!("/ in pass {pass}, by {}; implies {}", pair_text(table, by), implied(table, &pair))
+                let column = pair.implies.iter().find(|(p, _)| *p == by).map(|&(_, c)| table.column_text(c));
+                let column = column.map_or(String::new(), |c| format!(" (column {c})"));
+                let others = implied(table, &pair, Some(by));
+                let others = if others.is_empty() { others } else { format!("; implies {others} too") };
+                format!("/ in pass {pass}, by {}{column}{others}", pair_text(table, by))
             }
             _ => continue,
         };
         lines.push((pair_text(table, (pair.a, pair.b)), text));
     }
-    let width = lines.iter().map(|(p, _)| p.chars().count()).max().unwrap_or(0);
+    let widest = lines.iter().map(|(p, _)| p.chars().count()).max().unwrap_or(0);
+    // Long names are not worth a column of their own.
+    let width = if widest <= SHORT { widest } else { 0 };
     let rest = " ".repeat(width + 6);
     for (pair, text) in lines {
-        let pad = width - pair.chars().count();
+        let pad = width.saturating_sub(pair.chars().count());
         page.lines(wrap(&format!("  {pair}{}  ", " ".repeat(pad)), &rest, &text));
     }
     conflicts(page, spec, pairs);
@@ -116,6 +126,13 @@ fn reasons(page: &mut Page, spec: &Spec, pairs: &PairTable) {
 
 /// The contradictions, gathered by output and column.
 fn conflicts(page: &mut Page, spec: &Spec, pairs: &PairTable) {
+    let number = pairs.iter().filter(|p| matches!(p.verdict, Verdict::Conflict(_))).count();
+    if number > LIST {
+        page.line(format!(
+            "  x {number} pairs with contradicting outputs; which output and where is in the record"
+        ));
+        return;
+    }
     let mut places: BTreeMap<(usize, Option<String>), Vec<String>> = BTreeMap::new();
     for pair in pairs.iter() {
         if let Verdict::Conflict(conflict) = pair.verdict {
@@ -130,10 +147,12 @@ fn conflicts(page: &mut Page, spec: &Spec, pairs: &PairTable) {
     }
 }
 
-fn implied(table: &FlowTable, pair: &Pair) -> String {
+/// What a pair implies, without the pair that is named already.
+fn implied(table: &FlowTable, pair: &Pair, named: Option<(Row, Row)>) -> String {
     let texts: Vec<String> = pair
         .implies
         .iter()
+        .filter(|(p, _)| Some(*p) != named)
         .map(|(p, column)| format!("{} (column {})", pair_text(table, *p), table.column_text(*column)))
         .collect();
     listed(&texts)

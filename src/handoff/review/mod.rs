@@ -63,28 +63,29 @@ fn heading(page: &mut Page, project: &Project) {
     }
 }
 
-/// A section whose stage did not run.
+/// A section whose stage did not run. The first one says why.
 fn missing(page: &mut Page, name: &str, design: &Design) {
     page.section(name);
-    let errors = design.findings.iter().filter(|f| f.level == Level::Error);
-    let text = match errors.clone().count() {
-        0 => "Not derived.".to_owned(),
-        _ => {
-            let first = errors.map(|f| plain(&f.text)).next().unwrap_or_default();
-            format!("Not derived, because of an error before: {first}")
-        }
-    };
-    page.lines(wrap("", "", &text));
+    let error = design.findings.iter().find(|f| f.level == Level::Error);
+    match error.filter(|_| !page.broken) {
+        Some(error) => page.text(&format!("Not derived: {}", plain(&error.text))),
+        None => page.line("Not derived."),
+    }
+    page.broken = true;
 }
 
 /// Text that grows line by line.
 #[derive(Default)]
-struct Page(String);
+struct Page {
+    text: String,
+    /// Whether a section could not be written, so that the reason stands above.
+    broken: bool,
+}
 
 impl Page {
     fn line(&mut self, text: impl AsRef<str>) {
-        self.0.push_str(text.as_ref().trim_end());
-        self.0.push('\n');
+        self.text.push_str(text.as_ref().trim_end());
+        self.text.push('\n');
     }
 
     fn lines(&mut self, lines: impl IntoIterator<Item = String>) {
@@ -98,8 +99,8 @@ impl Page {
 
     /// An empty line, never two of them.
     fn gap(&mut self) {
-        if !self.0.ends_with("\n\n") {
-            self.0.push('\n');
+        if !self.text.ends_with("\n\n") {
+            self.text.push('\n');
         }
     }
 
@@ -110,6 +111,6 @@ impl Page {
     }
 
     fn finish(self) -> String {
-        format!("{}\n", self.0.trim_end())
+        format!("{}\n", self.text.trim_end())
     }
 }

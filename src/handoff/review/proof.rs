@@ -30,7 +30,7 @@ pub fn write(
     } else {
         page.text(&format!(
             "THE PROOF FAILED: {}.",
-            counted(proof.mismatches.len(), "disagreement", "disagreements")
+            counted(proof.mismatches.len() + proof.more_mismatches, "disagreement", "disagreements")
         ));
         for mismatch in &proof.mismatches {
             page.lines(wrap("  ", "      ", &format!("{}: {}", mismatch.stage, mismatch.text)));
@@ -39,7 +39,10 @@ pub fn write(
     if proof.hazards.is_empty() {
         page.text("No function can glitch in a move that can happen.");
     } else {
-        page.text(&format!("A FUNCTION CAN GLITCH: {}.", counted(proof.hazards.len(), "hazard", "hazards")));
+        page.text(&format!(
+            "A FUNCTION CAN GLITCH: {}.",
+            counted(proof.hazards.len() + proof.more_hazards, "hazard", "hazards")
+        ));
         for hazard in &proof.hazards {
             let row = reduced.table.name(hazard.row);
             let text = format!(
@@ -57,19 +60,21 @@ pub fn write(
 fn power_up(page: &mut Page, reduced: &Reduced, coded: &Coded, proof: &Proof) {
     let tried = counted(proof.power_up_states, "total state", "total states");
     if proof.traps.is_empty() {
-        page.text(&format!("Power-up: from each of {tried} it comes to rest in a code that is in use."));
+        let how = if proof.power_up_exact { "" } else { ", as far as they were tried" };
+        page.text(&format!("Power-up: from each of {tried} it comes to rest in a code that is in use{how}."));
         return;
     }
     page.text(&format!(
         "Power-up: from {} of {tried} it does not come to rest in a code that is in use. Reset it to {}.",
-        proof.traps.len(),
+        proof.traps.len() + proof.more_traps,
         coded.initial.text(coded.bits)
     ));
     for trap in proof.traps.iter().take(TRAPS) {
         page.lines(wrap("  ", "      ", &trap_text(reduced, coded, trap)));
     }
-    if proof.traps.len() > TRAPS {
-        page.line(format!("  and {} more, in the record", proof.traps.len() - TRAPS));
+    let more = proof.traps.len().saturating_sub(TRAPS) + proof.more_traps;
+    if more > 0 {
+        page.line(format!("  and {more} more"));
     }
 }
 
