@@ -3,6 +3,7 @@
 //! [`merge`] is told from the top: what may be merged ([`values::PairTable`]), the maximal compatible sets, the closed
 //! cover (the smallest, or the user's, checked), and the table that it makes.
 
+mod compatibles;
 mod greedy;
 mod model;
 mod pairs;
@@ -14,15 +15,12 @@ pub mod values;
 
 use fixedbitset::FixedBitSet;
 
-use crate::base::{Bound, Effort, Finding, Row};
+use crate::base::{Bound, Effort, Finding, Outputs, Row};
 use crate::project::choices::OutputStyle;
-use crate::search::clique::{self, Graph};
-use crate::spec::values::{FlowTable, Spec};
+use crate::spec::values::Spec;
 
+pub use compatibles::MOST_MAXIMAL;
 pub use values::{Conflict, CoverFault, MergeChoice, Merged, Pair, PairTable, Reduced, RowSet, Verdict};
-
-/// Maximal compatibles are listed up to this number. They are for the eye: no search depends on them.
-pub const MOST_MAXIMAL: usize = 5_000;
 
 /// Merges the rows of a checked specification.
 ///
@@ -31,10 +29,7 @@ pub const MOST_MAXIMAL: usize = 5_000;
 /// Only where outputs belong to rows and the table asks for what no row can give: findings of level error, each naming the
 /// row and its columns.
 pub fn merge(spec: &Spec, choice: &MergeChoice, effort: &Effort) -> Result<Merged, Vec<Finding>> {
-    let row_outputs = match choice.outputs {
-        OutputStyle::PerCell => None,
-        OutputStyle::PerRow => Some(row_outputs::row_outputs(spec)?),
-    };
+    let row_outputs = words_of_rows(spec, choice.outputs)?;
     let pairs = pairs::pair_table(&spec.table, row_outputs.as_deref());
     let diagram = pairs::merger_diagram(&pairs);
     let problem = problem::Problem::new(&spec.table, &diagram, effort);
@@ -57,8 +52,26 @@ pub fn merge(spec: &Spec, choice: &MergeChoice, effort: &Effort) -> Result<Merge
     if merged.faults.is_empty() {
         merged.reduced = Some(reduce::reduce(spec, &merged.cover, choice, row_outputs.as_deref()));
     }
-    list_maximal(&spec.table, &diagram, &mut merged, effort);
+    compatibles::list(&diagram, &problem, &mut merged, effort);
     Ok(merged)
+}
+
+/// The implication table alone.
+///
+/// # Errors
+///
+/// As [`merge`].
+pub fn implication_table(spec: &Spec, outputs: OutputStyle) -> Result<PairTable, Vec<Finding>> {
+    let row_outputs = words_of_rows(spec, outputs)?;
+    Ok(pairs::pair_table(&spec.table, row_outputs.as_deref()))
+}
+
+/// A word of outputs for each row, where outputs belong to rows.
+fn words_of_rows(spec: &Spec, outputs: OutputStyle) -> Result<Option<Vec<Outputs>>, Vec<Finding>> {
+    match outputs {
+        OutputStyle::PerCell => Ok(None),
+        OutputStyle::PerRow => row_outputs::row_outputs(spec).map(Some),
+    }
 }
 
 fn unmerged(pairs: PairTable, clique: Vec<Row>) -> Merged {
@@ -104,30 +117,4 @@ fn by_hand(
         Bound::Stopped { lower: lower_bound }
     };
     Merged { cover, faults, lower_bound, bound, ..blank }
-}
-
-/// Lists the maximal compatibles with their class sets, if they can be listed.
-fn list_maximal(table: &FlowTable, diagram: &Graph, merged: &mut Merged, effort: &Effort) {
-    let (maximal, complete) = clique::maximal(diagram, MOST_MAXIMAL, effort);
-    if complete {
-        merged.class_sets = maximal.iter().map(|set| class_sets(table, set)).collect();
-        merged.maximal = maximal;
-    }
-    merged.maximal_complete = complete;
-}
-
-/// The sets of two or more next rows that closure asks to lie together, none inside `set` or inside another.
-fn class_sets(table: &FlowTable, set: &RowSet) -> Vec<RowSet> {
-    let mut asked: Vec<RowSet> = Vec::new();
-    for column in table.columns() {
-        let mut next = FixedBitSet::with_capacity(table.len());
-        set.ones().filter_map(|r| table.next(Row::new(r), column)).for_each(|r| next.insert(r.at()));
-        if next.count_ones(..) < 2 || next.is_subset(set) || asked.iter().any(|other| next.is_subset(other)) {
-            continue;
-        }
-        asked.retain(|other| !other.is_subset(&next));
-        asked.push(next);
-    }
-    asked.sort_by(clique::compare_as_lists);
-    asked
 }

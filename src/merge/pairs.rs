@@ -6,7 +6,7 @@
 //!
 //! # Complexity
 //!
-//! With n rows, c columns and m outputs, conflicts take O(c·m·n²/64) word operations and striking O(c·n²/64 + c·t²) with
+//! With n rows, c columns and m outputs, conflicts take O(c·m·n²/128) word operations and striking O(c·n²/64 + c·t²) with
 //! t different next rows in a column (few where each row is stable in one column only), plus a constant for each of the
 //! n²/2 verdicts. Rounds do not multiply the cost: a pair is looked at again only when what it implies has just fallen.
 //!
@@ -16,7 +16,7 @@
 //!   functions", IRE Trans. on Electronic Computers EC-8, 1959.
 
 use crate::base::{Column, Outputs, Row};
-use crate::merge::values::{Conflict, PairTable, Verdict, columns_in_text_order};
+use crate::merge::values::{Conflict, PackedVerdict, PairTable, Verdict, columns_in_text_order};
 use crate::search::clique::Graph;
 use crate::spec::values::FlowTable;
 
@@ -24,19 +24,19 @@ use crate::spec::values::FlowTable;
 /// decide on conflicts then.
 pub(super) fn pair_table(table: &FlowTable, row_outputs: Option<&[Outputs]>) -> PairTable {
     let n = table.len();
-    let mut found = Found {
-        verdicts: vec![Verdict::Compatible; n * n.saturating_sub(1) / 2],
-        open: Graph::new(n).complement(),
-        fallen: Vec::new(),
-    };
-    match row_outputs {
-        Some(words) => conflicts(words, None, table.outputs, &mut found),
-        None => {
-            for column in columns_in_text_order(table.inputs) {
+    let stated = match row_outputs {
+        Some(words) => vec![Stated::of(None, words, table.outputs)],
+        None => columns_in_text_order(table.inputs)
+            .map(|column| {
                 let words: Vec<Outputs> = table.rows().map(|r| table.cell(r, column).outputs).collect();
-                conflicts(&words, Some(column), table.outputs, &mut found);
-            }
-        }
+                Stated::of(Some(column), &words, table.outputs)
+            })
+            .collect(),
+    };
+    let mut found =
+        Found { verdicts: vec![PackedVerdict::default(); n * n.saturating_sub(1) / 2], open: Graph::new(n) };
+    for row in 0..n {
+        conflicts(&stated, row, &mut found);
     }
     let passes = strike(table, &mut found);
     PairTable::new(table, found.verdicts, passes)
@@ -46,10 +46,8 @@ pub(super) fn pair_table(table: &FlowTable, row_outputs: Option<&[Outputs]>) -> 
 pub(super) fn merger_diagram(pairs: &PairTable) -> Graph {
     let mut graph = Graph::new(pairs.rows);
     for b in 1..pairs.rows {
-        for a in 0..b {
-            if pairs.compatible(Row::new(a), Row::new(b)) {
-                graph.join(a, b);
-            }
+        for a in (0..b).filter(|&a| pairs.compatible(Row::new(a), Row::new(b))) {
+            graph.join(a, b);
         }
     }
     graph
@@ -57,46 +55,62 @@ pub(super) fn merger_diagram(pairs: &PairTable) -> Graph {
 
 /// What is known so far.
 struct Found {
-    verdicts: Vec<Verdict>,
+    verdicts: Vec<PackedVerdict>,
     /// Pairs that nothing speaks against yet.
     open: Graph,
-    /// Pairs that have fallen in this round.
-    fallen: Vec<(u32, u32)>,
 }
 
-impl Found {
-    /// Marks the open pairs of `row` with a member of `others`.
-    fn fell(&mut self, row: usize, others: &[u64], verdict: impl Fn(usize) -> Verdict) {
-        for (w, &word) in others.iter().enumerate() {
-            let mut hit = word & self.open.row(row)[w];
-            while hit != 0 {
-                let other = w * 64 + hit.trailing_zeros() as usize;
-                hit &= hit - 1;
-                self.open.part(row, other);
-                self.fallen.push((row as u32, other as u32));
-                self.verdicts[PairTable::index(Row::new(row), Row::new(other))] = verdict(other);
-            }
-        }
+/// The values that the rows state in one column: for each output that is 0 somewhere and 1 elsewhere, the rows with 0 and
+/// the rows with 1.
+struct Stated {
+    column: Option<Column>,
+    outputs: Vec<(usize, [Vec<u64>; 2])>,
+}
+
+impl Stated {
+    fn of(column: Option<Column>, words: &[Outputs], outputs: usize) -> Self {
+        let outputs = (0..outputs)
+            .filter_map(|output| {
+                let mut rows = [false, true].map(|_| vec![0u64; words.len().div_ceil(64)]);
+                for (row, word) in words.iter().enumerate() {
+                    if let Some(value) = word.get(output) {
+                        rows[usize::from(value)][row / 64] |= 1 << (row % 64);
+                    }
+                }
+                rows.iter().all(|set| set.iter().any(|&w| w != 0)).then_some((output, rows))
+            })
+            .collect();
+        Stated { column, outputs }
     }
 }
 
-/// Marks the open pairs that have different values of an output in one column, lowest output first.
-fn conflicts(words: &[Outputs], column: Option<Column>, outputs: usize, found: &mut Found) {
-    let mut ones = vec![0; found.open.words()];
-    let mut zeros = Vec::with_capacity(words.len());
-    for output in 0..outputs {
-        ones.fill(0);
-        zeros.clear();
-        for (row, word) in words.iter().enumerate() {
-            match word.get(output) {
-                Some(true) => ones[row / 64] |= 1 << (row % 64),
-                Some(false) => zeros.push(row),
-                None => {}
+/// Settles the pairs of `row` with all rows before it: a conflict in the first column in text order, lowest output first, or
+/// open.
+fn conflicts(stated: &[Stated], row: usize, found: &mut Found) {
+    let (word, bit) = (row / 64, row % 64);
+    let mut open: Vec<u64> = vec![u64::MAX; word + 1];
+    open[word] = (1 << bit) - 1;
+    let verdicts = &mut found.verdicts[row * row.saturating_sub(1) / 2..][..row];
+    for Stated { column, outputs } in stated {
+        for &(output, ref rows) in outputs {
+            let Some(own) = (0..2).find(|&value| rows[value][word] >> bit & 1 == 1) else { continue };
+            let verdict = PackedVerdict::pack(Verdict::Conflict(Conflict { column: *column, output }));
+            for (w, (open, other)) in open.iter_mut().zip(&rows[1 - own]).enumerate() {
+                let hit = *open & other;
+                *open ^= hit;
+                for_each_bit(hit, w, |other| verdicts[other] = verdict);
             }
         }
-        for &row in &zeros {
-            found.fell(row, &ones, |_| Verdict::Conflict(Conflict { column, output }));
-        }
+    }
+    for (w, &bits) in open.iter().enumerate() {
+        for_each_bit(bits, w, |other| found.open.join(row, other));
+    }
+}
+
+fn for_each_bit(mut bits: u64, word: usize, mut visit: impl FnMut(usize)) {
+    while bits != 0 {
+        visit(word * 64 + bits.trailing_zeros() as usize);
+        bits &= bits - 1;
     }
 }
 
@@ -106,31 +120,40 @@ fn strike(table: &FlowTable, found: &mut Found) -> usize {
         .map(|c| Arrivals::of(table, c))
         .filter(|arrivals| arrivals.goals.len() > 1)
         .collect();
-    // Rows joined where their pair fell in the last round.
-    let mut fresh = Graph::new(table.len());
+    // Rows joined where their pair fell in the last round: at first all that conflict.
+    let mut fresh = found.open.complement();
     let mut bad = vec![0; fresh.words()];
-    let mut pass = 0;
+    let mut passes = 0;
     loop {
-        fresh.clear();
-        for (a, b) in std::mem::take(&mut found.fallen) {
-            fresh.join(a as usize, b as usize);
-        }
+        let before = found.open.clone();
         for arrivals in &columns {
             for &goal in &arrivals.goals {
-                arrivals.leading_apart(goal, &fresh, &mut bad);
-                for &row in &arrivals.from[goal] {
-                    found.fell(row, &bad, |other| {
-                        let next = arrivals.goal_of[other];
-                        let by = (Row::new(goal.min(next)), Row::new(goal.max(next)));
-                        Verdict::Struck { by, pass: pass + 1 }
-                    });
+                if arrivals.leading_apart(goal, &fresh, &mut bad) {
+                    for &row in &arrivals.from[goal] {
+                        strike_row(arrivals, row, &bad, passes + 1, found);
+                    }
                 }
             }
         }
-        if found.fallen.is_empty() {
-            return pass;
+        if found.open == before {
+            return passes;
         }
-        pass += 1;
+        passes += 1;
+        fresh = before.without(&found.open);
+    }
+}
+
+/// Strikes the open pairs of `row` with a member of `bad`: their next rows in this column fell apart.
+fn strike_row(arrivals: &Arrivals, row: usize, bad: &[u64], pass: usize, found: &mut Found) {
+    for (w, &bad) in bad.iter().enumerate() {
+        let hit = bad & found.open.row(row)[w];
+        for_each_bit(hit, w, |other| {
+            let (p, q) = (arrivals.goal_of[row], arrivals.goal_of[other]);
+            let by = (Row::new(p.min(q)), Row::new(p.max(q)));
+            found.open.part(row, other);
+            found.verdicts[PairTable::index(Row::new(row), Row::new(other))] =
+                PackedVerdict::pack(Verdict::Struck { by, pass });
+        });
     }
 }
 
@@ -161,18 +184,16 @@ impl Arrivals {
         Arrivals { goals, goal_set, from, goal_of }
     }
 
-    /// Fills `bad` with the rows whose next row is joined to `goal` in `fresh`.
-    fn leading_apart(&self, goal: usize, fresh: &Graph, bad: &mut [u64]) {
+    /// Fills `bad` with the rows whose next row is joined to `goal` in `fresh`; whether there are any.
+    fn leading_apart(&self, goal: usize, fresh: &Graph, bad: &mut [u64]) -> bool {
         bad.fill(0);
+        let mut any = false;
         for (w, (&near, &goals)) in fresh.row(goal).iter().zip(&self.goal_set).enumerate() {
-            let mut others = near & goals;
-            while others != 0 {
-                let other = w * 64 + others.trailing_zeros() as usize;
-                others &= others - 1;
-                for &row in &self.from[other] {
-                    bad[row / 64] |= 1 << (row % 64);
-                }
-            }
+            for_each_bit(near & goals, w, |other| {
+                any = true;
+                self.from[other].iter().for_each(|&row| bad[row / 64] |= 1 << (row % 64));
+            });
         }
+        any
     }
 }

@@ -73,13 +73,51 @@ pub struct PairTable {
     pub passes: usize,
     inputs: usize,
     next: Vec<Option<Row>>,
-    verdicts: Vec<Verdict>,
+    verdicts: Vec<PackedVerdict>,
+}
+
+/// A verdict in eight bytes: half a million of them should stay small. Zero is "compatible".
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
+pub(super) struct PackedVerdict(u64);
+
+impl PackedVerdict {
+    const CONFLICT: u64 = 1;
+    const STRUCK: u64 = 2;
+
+    /// Packs a verdict; a pass beyond 2^30 cannot occur, as there are fewer pairs than that.
+    pub(super) fn pack(verdict: Verdict) -> Self {
+        PackedVerdict(match verdict {
+            Verdict::Compatible => 0,
+            Verdict::Conflict(Conflict { column, output }) => {
+                let column = column.map_or(0, |c| u64::from(c.0) + 1);
+                Self::CONFLICT | column << 2 | (output as u64) << 32
+            }
+            Verdict::Struck { by, pass } => {
+                Self::STRUCK | (pass as u64) << 2 | u64::from(by.0.0) << 32 | u64::from(by.1.0) << 48
+            }
+        })
+    }
+
+    fn unpack(self) -> Verdict {
+        let middle = self.0 >> 2 & 0x3fff_ffff;
+        match self.0 & 3 {
+            Self::CONFLICT => Verdict::Conflict(Conflict {
+                column: middle.checked_sub(1).map(|c| Column(c as u16)),
+                output: (self.0 >> 32) as usize,
+            }),
+            Self::STRUCK => Verdict::Struck {
+                by: (Row((self.0 >> 32) as u16), Row((self.0 >> 48) as u16)),
+                pass: middle as usize,
+            },
+            _ => Verdict::Compatible,
+        }
+    }
 }
 
 impl PairTable {
     /// The table of `rows` rows with the given verdicts, one for each pair in the order of [`PairTable::index`], for
     /// a flow table with these next rows.
-    pub fn new(table: &FlowTable, verdicts: Vec<Verdict>, passes: usize) -> Self {
+    pub(super) fn new(table: &FlowTable, verdicts: Vec<PackedVerdict>, passes: usize) -> Self {
         debug_assert_eq!(verdicts.len(), table.len() * table.len().saturating_sub(1) / 2);
         let next = table.rows().flat_map(|r| table.row_cells(r).iter().map(|cell| cell.next)).collect();
         PairTable { rows: table.len(), passes, inputs: table.inputs, next, verdicts }
@@ -94,12 +132,12 @@ impl PairTable {
 
     /// What was found for two different rows, in any order.
     pub fn verdict(&self, a: Row, b: Row) -> Verdict {
-        self.verdicts[Self::index(a, b)]
+        self.verdicts[Self::index(a, b)].unpack()
     }
 
     /// Whether two rows are compatible. A row is compatible with itself.
     pub fn compatible(&self, a: Row, b: Row) -> bool {
-        a == b || self.verdict(a, b) == Verdict::Compatible
+        a == b || self.verdicts[Self::index(a, b)] == PackedVerdict::default()
     }
 
     /// Pairs (lower, higher) that must be merged with two different rows, each with the first column, in text order,
@@ -222,4 +260,33 @@ pub struct Merged {
     pub tie_proved: bool,
     /// The reduced table.
     pub reduced: Option<Reduced>,
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn verdicts_survive_packing() {
+        let column = |c| Some(Column(c));
+        let mut verdicts = vec![Verdict::Compatible];
+        for column in [None, column(0), column(1023), column(u16::MAX)] {
+            verdicts.extend([0, 31].map(|output| Verdict::Conflict(Conflict { column, output })));
+        }
+        for by in [(Row(0), Row(1)), (Row(1022), Row(1023)), (Row(0), Row(u16::MAX))] {
+            verdicts.extend([1, 523_776, (1 << 30) - 1].map(|pass| Verdict::Struck { by, pass }));
+        }
+        for verdict in verdicts {
+            assert_eq!(PackedVerdict::pack(verdict).unpack(), verdict);
+        }
+    }
+
+    #[test]
+    fn columns_come_in_the_order_of_their_bit_strings() {
+        for inputs in 0..5 {
+            let texts: Vec<String> = columns_in_text_order(inputs).map(|c| c.text(inputs)).collect();
+            assert_eq!(texts.len(), 1 << inputs);
+            assert!(texts.is_sorted());
+        }
+    }
 }

@@ -67,9 +67,12 @@ impl Graph {
         self.bits[b * self.words + a / 64] &= !(1 << (a % 64));
     }
 
-    /// Parts all vertices.
-    pub fn clear(&mut self) {
-        self.bits.fill(0);
+    /// The edges of this graph that `other`, with as many vertices, lacks.
+    #[must_use]
+    pub fn without(&self, other: &Graph) -> Graph {
+        debug_assert_eq!(self.vertices, other.vertices);
+        let bits = self.bits.iter().zip(&other.bits).map(|(a, b)| a & !b).collect();
+        Graph { bits, ..*self }
     }
 
     /// Whether two vertices are joined.
@@ -101,7 +104,24 @@ impl Graph {
 /// Compares two sets as ascending lists: at the first difference the smaller element wins, and a list that ends there
 /// comes before one that goes on.
 pub fn compare_as_lists(a: &FixedBitSet, b: &FixedBitSet) -> Ordering {
-    a.ones().cmp(b.ones())
+    let (a, b) = (a.as_slice(), b.as_slice());
+    let word = |words: &[usize], w: usize| words.get(w).copied().unwrap_or(0);
+    let longest = a.len().max(b.len());
+    let Some(w) = (0..longest).find(|&w| word(a, w) != word(b, w)) else { return Ordering::Equal };
+    let bit = (word(a, w) ^ word(b, w)).trailing_zeros();
+    let (lacker, order) =
+        if word(a, w) >> bit & 1 == 1 { (b, Ordering::Less) } else { (a, Ordering::Greater) };
+    // The list without the element comes first only if it has come to its end.
+    let goes_on = word(lacker, w) >> bit != 0 || lacker.iter().skip(w + 1).any(|&x| x != 0);
+    if goes_on { order } else { order.reverse() }
+}
+
+/// The set of the vertices in the words of a [`Graph::row`].
+pub fn set_of_words(words: &[u64], vertices: usize) -> FixedBitSet {
+    const PARTS: usize = (u64::BITS / usize::BITS) as usize;
+    let blocks =
+        words.iter().flat_map(|&w| (0..PARTS).map(move |i| (w >> (i as u32 * (usize::BITS % 64))) as usize));
+    FixedBitSet::with_capacity_and_blocks(vertices, blocks)
 }
 
 /// All maximal cliques, in the order of their ascending vertex lists, and `true`; or, if there are more than `limit` or
@@ -205,19 +225,6 @@ impl<const W: usize> Set<W> {
             Some(v)
         })
     }
-
-    fn compare_as_lists(&self, other: &Self) -> Ordering {
-        let Some(w) = (0..W).find(|&w| self.0[w] != other.0[w]) else { return Ordering::Equal };
-        let bit = (self.0[w] ^ other.0[w]).trailing_zeros();
-        let (holder, lacker, order) = if self.0[w] >> bit & 1 == 1 {
-            (self, other, Ordering::Less)
-        } else {
-            (other, self, Ordering::Greater)
-        };
-        debug_assert!(holder.0[w] >> bit & 1 == 1);
-        let goes_on = lacker.0[w] >> bit != 0 || lacker.0[w + 1..].iter().any(|&x| x != 0);
-        if goes_on { order } else { order.reverse() }
-    }
 }
 
 struct Enumeration<'a, 'e, const W: usize> {
@@ -234,17 +241,10 @@ fn maximal_in<const W: usize>(graph: &Graph, limit: usize, effort: &Effort) -> (
     let mut search: Enumeration<W> =
         Enumeration { neighbours, found: Vec::new(), limit, branches: 0, effort };
     let complete = search.extend(Set::EMPTY, Set::first(n), Set::EMPTY).is_ok();
-    search.found.sort_unstable_by(Set::compare_as_lists);
-    let sets = search.found.iter().map(|set| to_fixed(set, n)).collect();
+    let mut sets: Vec<FixedBitSet> =
+        search.found.iter().map(|set| set_of_words(&set.0[..graph.words], n)).collect();
+    sets.sort_unstable_by(compare_as_lists);
     (sets, complete)
-}
-
-fn to_fixed<const W: usize>(set: &Set<W>, vertices: usize) -> FixedBitSet {
-    let mut out = FixedBitSet::with_capacity(vertices);
-    for v in set.ones() {
-        out.insert(v);
-    }
-    out
 }
 
 impl<const W: usize> Enumeration<'_, '_, W> {
@@ -459,6 +459,20 @@ mod tests {
             assert_eq!(Some(largest.len()), sets.iter().map(|s| s.count_ones(..)).max());
             assert!(sets.windows(2).all(|w| compare_as_lists(&w[0], &w[1]) == Ordering::Less));
         }
+    }
+
+    #[test]
+    fn sets_compare_as_their_lists() {
+        let sets: Vec<FixedBitSet> = (0..64u64)
+            .flat_map(|bits| [set_of_words(&[bits, 0], 128), set_of_words(&[bits >> 3, bits & 7], 128)])
+            .collect();
+        for a in &sets {
+            for b in &sets {
+                let lists = a.ones().collect::<Vec<_>>().cmp(&b.ones().collect());
+                assert_eq!(compare_as_lists(a, b), lists);
+            }
+        }
+        assert_eq!(set_of_words(&[1 << 63, 2], 128).ones().collect::<Vec<_>>(), [63, 65]);
     }
 
     #[test]

@@ -14,7 +14,7 @@ use std::cell::Cell;
 use batsat::Callbacks;
 use rustsat::solvers::{Solve, SolveIncremental, SolverResult};
 pub use rustsat::types::Lit;
-use rustsat::types::{TernaryVal, Var};
+use rustsat::types::{Cl, TernaryVal, Var};
 
 use crate::base::{Effort, Halted, Stop};
 
@@ -70,9 +70,8 @@ impl Sat {
     /// Adds a clause: at least one of the literals holds. The empty clause makes the problem unsatisfiable.
     pub fn clause(&mut self, literals: &[Lit]) {
         self.clauses += 1;
-        let clause = literals.iter().copied().collect();
         // The library's only error is running out of memory while it reserves variables.
-        let added = self.solver.add_clause(clause);
+        let added = self.solver.add_clause_ref(Cl::new(literals));
         debug_assert!(added.is_ok());
     }
 
