@@ -15,6 +15,7 @@
 
 mod adjacency;
 mod by_hand;
+mod cube;
 mod dichotomy;
 mod fit;
 mod multiple_row;

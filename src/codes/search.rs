@@ -27,10 +27,14 @@
 //! - I. Havel and J. Morávek, "B-valuations of graphs", Czechoslovak Math. J. 22, 1972: which graphs lie in a cube.
 
 use crate::base::{Code, Effort, Halted};
+use crate::codes::cube::{self, Outcome};
 use crate::codes::net::{Net, Part};
 use crate::codes::routes::{self, NONE, Need, Stand};
 use crate::codes::values::{Step, Way};
 use crate::search::sat::{Lit, Sat};
+
+/// Nodes of the depth-first search before the solver takes over.
+const NODES: u64 = 100_000;
 
 /// Codes with the ways through them.
 #[derive(Debug, Clone)]
@@ -52,8 +56,94 @@ pub(super) struct Placement {
 /// # Errors
 /// The effort ran out before the first solution.
 pub(super) fn place(net: &Net, bits: usize, effort: &Effort) -> Result<Option<Placement>, Halted> {
-    let Some(placer) = Placer::free(net, bits, effort)? else { return Ok(None) };
-    placer.shortest(effort)
+    if bits < usize::BITS as usize && net.len() > 1 << bits {
+        return Ok(None);
+    }
+    let start = match in_small_cube(net, bits, effort)? {
+        Start::Settled(answer) => return Ok(answer),
+        Start::Best(placement) => Some(placement),
+        Start::Unknown => None,
+    };
+    match (Placer::free(net, bits, effort), start) {
+        (Ok(Some(mut placer)), Some(best)) => Ok(Some(placer.shorten(best, effort))),
+        (Ok(Some(placer)), None) => placer.shortest(effort),
+        (_, Some(best)) => Ok(Some(best)),
+        (answer, None) => answer.map(|_| None),
+    }
+}
+
+/// What the depth-first search found out.
+enum Start {
+    /// Codes with the shortest longest way, or that there are none.
+    Settled(Option<Placement>),
+    /// Codes.
+    Best(Placement),
+    /// Nothing.
+    Unknown,
+}
+
+/// Tries the depth-first search: first for any codes, then for ways of 1, 2, .. steps.
+fn in_small_cube(net: &Net, bits: usize, effort: &Effort) -> Result<Start, Halted> {
+    if bits > cube::BITS {
+        return Ok(Start::Unknown);
+    }
+    let mut best = match cube::place(net, bits, usize::from(NONE), NODES, effort)? {
+        Outcome::Found(placement) => placement,
+        Outcome::Nothing => return Ok(Start::Settled(None)),
+        Outcome::GaveUp => return Ok(Start::Unknown),
+    };
+    best.shortest = false;
+    for limit in 1..best.longest {
+        match cube::place(net, bits, limit, NODES, effort) {
+            Ok(Outcome::Found(mut better)) => {
+                better.shortest = true;
+                return Ok(Start::Settled(Some(better)));
+            }
+            Ok(Outcome::Nothing) => {}
+            Ok(Outcome::GaveUp) => return Ok(Start::Best(best)),
+            Err(Halted) => return Ok(Start::Settled(Some(best))),
+        }
+    }
+    best.shortest = true;
+    Ok(Start::Settled(Some(best)))
+}
+
+/// Ways through given codes, none longer than `limit`, if there are any.
+///
+/// # Errors
+/// The effort ran out.
+pub(super) fn settle(
+    net: &Net,
+    codes: &[Code],
+    bits: usize,
+    limit: usize,
+    effort: &Effort,
+) -> Result<Option<Placement>, Halted> {
+    let near = neighbours(codes, bits);
+    let values: Vec<u32> = net.values.iter().map(|word| word.ones).collect();
+    let stand = Stand { near: &near, values: &values };
+    // Open outputs tie the columns together: then only the solver can tell.
+    let open = (0..net.len()).any(|p| net.open(p) != 0);
+    let mut hops = Vec::with_capacity(net.fields.len());
+    if !open {
+        for field in &net.fields {
+            if field
+                .basins
+                .iter()
+                .enumerate()
+                .any(|(b, basin)| !routes::within(basin, &routes::tree(net, field, b, &stand, None), limit))
+            {
+                return Ok(None);
+            }
+            hops.extend(routes::share(net, field, &stand, limit));
+        }
+        if hops.len() == net.fields.len() {
+            return Ok(Some(placement(net, codes.to_vec(), hops)));
+        }
+    }
+    let mut placer = Placer::fixed(net, codes, bits);
+    let tight = placer.sat.variable();
+    placer.solve(limit, Some(tight), effort)
 }
 
 /// Ways through given codes, with the shortest longest way. `Ok(None)`: there are none.
@@ -171,9 +261,6 @@ impl<'a> Placer<'a> {
     /// A placer in which codes are to be found; `None` if there are none for a plain reason.
     fn free(net: &'a Net, bits: usize, effort: &Effort) -> Result<Option<Self>, Halted> {
         let points = net.len();
-        if bits < usize::BITS as usize && points > 1 << bits {
-            return Ok(None);
-        }
         effort.spend((points * points * bits / 20) as u64 + 1)?;
         let pairs = required(net);
         let (hub, around) = hub(net, &pairs);
@@ -330,7 +417,13 @@ impl<'a> Placer<'a> {
     }
 
     fn shortest(mut self, effort: &Effort) -> Result<Option<Placement>, Halted> {
-        let Some(mut best) = self.solve(usize::from(NONE), None, effort)? else { return Ok(None) };
+        let Some(best) = self.solve(usize::from(NONE), None, effort)? else { return Ok(None) };
+        Ok(Some(self.shorten(best, effort)))
+    }
+
+    /// Ways as short as the effort allows, from a first solution on.
+    fn shorten(&mut self, mut best: Placement, effort: &Effort) -> Placement {
+        best.shortest = true;
         while best.longest > 1 {
             let tight = self.sat.variable();
             match self.solve(best.longest - 1, Some(tight), effort) {
@@ -345,7 +438,7 @@ impl<'a> Placer<'a> {
                 }
             }
         }
-        Ok(Some(best))
+        best
     }
 
     /// A placement in which no way is longer than `limit`; cuts that hold for the limit alone are made under `tight`.
