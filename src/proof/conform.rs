@@ -29,20 +29,33 @@ pub(super) struct Conform<'a> {
     pub naming: &'a Naming<'a>,
 }
 
-/// A stable total state of the circuit, with the one before it on a shortest way.
-#[derive(Clone, Copy)]
-struct Reached {
-    row: Row,
-    column: Column,
-    code: Code,
-    before: usize,
+/// A stable total state of the circuit.
+type State = (Row, Column, Code);
+
+/// What was met so far.
+#[derive(Default)]
+struct Trace {
+    /// Stable states, each with the number of the one before it on a shortest way.
+    reached: Vec<(State, Option<usize>)>,
+    seen: BTreeSet<State>,
+    stretches: Vec<Stretch>,
+    /// Points of which a mismatch was told already.
+    told: BTreeSet<u32>,
+}
+
+impl Trace {
+    fn reach(&mut self, state: State, before: Option<usize>) {
+        if self.seen.insert(state) {
+            self.reached.push((state, before));
+        }
+    }
 }
 
 /// A move that is being followed.
 struct Following {
     /// Number of the state in which it starts.
     at: usize,
-    from: Reached,
+    from: State,
     column: Column,
     to: Row,
 }
@@ -50,22 +63,15 @@ struct Following {
 impl Conform<'_> {
     /// Follows all moves; returns the stretches in which something changes, each once.
     pub fn check(&self, moves: &Moves, report: &mut Report) -> Vec<Stretch> {
-        let mut stretches = Vec::new();
-        let mut told = BTreeSet::new();
-        self.follow_all(moves, &mut stretches, &mut told, report);
-        self.every_cell(&mut told, report);
-        self.every_entry(&told, report);
+        let mut trace = Trace::default();
+        self.follow_all(moves, &mut trace, report);
+        self.every_cell(&mut trace.told, report);
+        self.every_entry(&trace.told, report);
         self.outputs_of_rows(report);
-        once(stretches)
+        once(trace.stretches)
     }
 
-    fn follow_all(
-        &self,
-        moves: &Moves,
-        stretches: &mut Vec<Stretch>,
-        told: &mut BTreeSet<u32>,
-        report: &mut Report,
-    ) {
+    fn follow_all(&self, moves: &Moves, trace: &mut Trace, report: &mut Report) {
         let start = self.reduced.initial;
         if !self.codes(start.row).contains(&self.coded.initial) {
             report.mismatch("functions", || {
@@ -76,20 +82,25 @@ impl Conform<'_> {
                 )
             });
         }
-        let first = Reached { row: start.row, column: start.column, code: self.coded.initial, before: 0 };
-        let mut reached = vec![first];
-        let mut seen = BTreeSet::from([(first.row, first.column, first.code)]);
-        let mut at = 0;
-        while at < reached.len() {
-            let from = reached[at];
-            for &(column, to) in moves.get(&(from.row, from.column)).into_iter().flatten() {
-                let ends =
-                    self.follow(&Following { at, from, column, to }, &reached, stretches, told, report);
+        self.follow_from((start.row, start.column, self.coded.initial), moves, trace, report);
+        // Power-up can leave a row in any of its codes, so the moves must be sound from those that the walk misses too.
+        for &(row, column) in moves.keys() {
+            for &code in self.codes(row) {
+                self.follow_from((row, column, code), moves, trace, report);
+            }
+        }
+    }
+
+    /// Follows all moves from a stable total state and from those that they lead to, breadth first.
+    fn follow_from(&self, start: State, moves: &Moves, trace: &mut Trace, report: &mut Report) {
+        let mut at = trace.reached.len();
+        trace.reach(start, None);
+        while at < trace.reached.len() {
+            let (from, _) = trace.reached[at];
+            for &(column, to) in moves.get(&(from.0, from.1)).into_iter().flatten() {
                 report.proof.moves_checked += 1;
-                for code in ends {
-                    if seen.insert((to, column, Code(code))) {
-                        reached.push(Reached { row: to, column, code: Code(code), before: at });
-                    }
+                for code in self.follow(&Following { at, from, column, to }, trace, report) {
+                    trace.reach((to, column, Code(code)), Some(at));
                 }
             }
             at += 1;
@@ -97,17 +108,11 @@ impl Conform<'_> {
     }
 
     /// Follows one move from one code; returns the codes of the right row in which it can end.
-    fn follow(
-        &self,
-        of: &Following,
-        reached: &[Reached],
-        stretches: &mut Vec<Stretch>,
-        told: &mut BTreeSet<u32>,
-        report: &mut Report,
-    ) -> Vec<u32> {
+    fn follow(&self, of: &Following, trace: &mut Trace, report: &mut Report) -> Vec<u32> {
+        let Trace { reached, stretches, told, .. } = trace;
         let circuit = self.circuit;
-        let code = of.from.code.0;
-        let start = self.point(of.from.column, code);
+        let (row, from, Code(code)) = of.from;
+        let start = self.point(from, code);
         let entry = self.point(of.column, code);
         for inner in points(start, entry).filter(|&p| p != start && p != entry) {
             if circuit.next(inner) != code && told.insert(inner) {
@@ -130,19 +135,19 @@ impl Conform<'_> {
             });
         }
         let table = &self.reduced.table;
-        let old = table.cell(of.from.row, of.from.column).outputs;
+        let old = table.cell(row, from).outputs;
         let new = table.cell(of.to, of.column).outputs;
         for &end in &ends {
             self.compare(self.point(of.column, end), new, told, report, || self.place(of, reached));
         }
-        let passed = if of.to == of.from.row { new } else { table.cell(of.from.row, of.column).outputs };
+        let passed = table.cell(row, of.column).outputs;
         self.compare(entry, passed, told, report, || self.place(of, reached));
         // An open end puts no condition on the output.
         let bound = old.care & new.care & circuit.present();
-        stretches.push(Stretch { from: start, to: entry, row: of.from.row, outputs: bound });
+        stretches.push(Stretch { from: start, to: entry, row, outputs: bound });
         for &(a, b) in &settled.steps {
             let (from, to) = (self.point(of.column, a), self.point(of.column, b));
-            stretches.push(Stretch { from, to, row: of.from.row, outputs: bound });
+            stretches.push(Stretch { from, to, row, outputs: bound });
         }
         self.once_each_way(of, bound, (old.ones, passed, new.ones), &settled, report);
         ends
@@ -157,8 +162,9 @@ impl Conform<'_> {
         settled: &Settled,
         report: &mut Report,
     ) {
-        let start = self.point(of.from.column, of.from.code.0);
-        let entry = self.point(of.column, of.from.code.0);
+        let (row, column, Code(code)) = of.from;
+        let start = self.point(column, code);
+        let entry = self.point(of.column, code);
         let mut wrong = 0;
         let before = (new & !passed.care) | passed.ones;
         let after = (old & !passed.care) | passed.ones;
@@ -172,7 +178,7 @@ impl Conform<'_> {
             wrong &= wrong - 1;
             let Some(f) = self.circuit.outputs[j].as_ref() else { continue };
             let end = settled.ends.first().map_or(entry, |&e| self.point(of.column, e));
-            let stretch = Stretch { from: start, to: end, row: of.from.row, outputs: 0 };
+            let stretch = Stretch { from: start, to: end, row, outputs: 0 };
             let bit = |word: u32| word >> j & 1;
             let what = if bit(old) == bit(new) {
                 format!(
@@ -186,9 +192,9 @@ impl Conform<'_> {
             let mut found = self.naming.found(self.circuit, f.name, stretch, "function", what);
             found.text = format!(
                 "row {} (code {}), inputs {} -> {}: {}",
-                self.row(of.from.row),
-                self.code(of.from.code.0),
-                self.column(of.from.column),
+                self.row(row),
+                self.code(code),
+                self.column(column),
                 self.column(of.column),
                 found.text.split_once(": ").map_or("", |(_, what)| what)
             );
@@ -362,25 +368,25 @@ impl Conform<'_> {
     }
 
     /// Where a move starts, with the input sequence that leads there.
-    fn place(&self, of: &Following, reached: &[Reached]) -> String {
-        let mut columns = vec![of.column];
-        let mut at = of.at;
-        loop {
-            columns.push(reached[at].column);
-            if at == 0 {
-                break;
-            }
-            at = reached[at].before;
+    fn place(&self, of: &Following, reached: &[(State, Option<usize>)]) -> String {
+        let mut columns = vec![self.column(of.column)];
+        let mut first = of.from;
+        let mut at = Some(of.at);
+        while let Some((state, before)) = at.map(|k| reached[k]) {
+            columns.push(self.column(state.1));
+            first = state;
+            at = before;
         }
         columns.reverse();
-        let sequence: Vec<String> = columns.into_iter().map(|c| self.column(c)).collect();
+        let (row, from, Code(code)) = of.from;
         format!(
-            "row {} (code {}), inputs {} -> {}, reached by {}",
-            self.row(of.from.row),
-            self.code(of.from.code.0),
-            self.column(of.from.column),
+            "row {} (code {}), inputs {} -> {}, reached from {} by {}",
+            self.row(row),
+            self.code(code),
+            self.column(from),
             self.column(of.column),
-            sequence.join(" ")
+            self.row(first.0),
+            columns.join(" ")
         )
     }
 
