@@ -16,7 +16,7 @@ const ROOMS: &[(&str, &[&str])] = &[
     ("project", &["base"]),
     ("spec", &["base", "project"]),
     ("merge", &["base", "search", "spec", CHOICES]),
-    ("codes", &["base", "search", "spec", "merge", CHOICES]),
+    ("codes", &["base", "search", "spec", "merge", CHOICES, LIMITS]),
     ("logic", &["base", "search", "spec", "merge", "codes", CHOICES]),
     ("gates", &["base", "logic", "codes", CHOICES]),
     (
@@ -66,6 +66,9 @@ const ROOMS: &[(&str, &[&str])] = &[
 
 /// The plain enums that every stage may read.
 const CHOICES: &str = "project::choices";
+
+/// The plain numbers that a stage needs to refuse what is too large.
+const LIMITS: &str = "project::limits";
 
 /// What only some rooms may name: the text that gives it away, and the rooms where it is at home.
 const RESERVED: &[(&str, &[&str])] = &[

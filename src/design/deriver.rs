@@ -23,7 +23,7 @@ use crate::spec::{self, Spec};
 /// Derives a project again and again, each time only from the first stage whose input has changed.
 #[derive(Debug, Default)]
 pub struct Deriver {
-    checked: Kept<Project, (Arc<Vec<Finding>>, Option<Arc<Spec>>)>,
+    checked: Kept<Project, Checked>,
     merged: Kept<(Arc<Spec>, MergeChoice, u64), Outcome<Merged>>,
     reduced: Kept<Reduced, Arc<Reduced>>,
     coded: Kept<(Arc<Reduced>, Method, u64), Outcome<Coded>>,
@@ -32,6 +32,8 @@ pub struct Deriver {
     proof: Kept<(Arc<Spec>, Arc<Reduced>, Arc<Coded>, Arc<Equations>), Arc<Proof>>,
 }
 
+/// Findings of the check, and the specification if there is no error among them.
+type Checked = (Arc<Vec<Finding>>, Option<Arc<Spec>>);
 /// A stage's value, or why there is none.
 type Outcome<T> = Result<Arc<T>, Vec<Finding>>;
 
