@@ -1,16 +1,16 @@
 //! Depth-first search for codes of few bits, with the whole cube in one machine word.
 //!
-//! Points are put on the corners of the cube one after the other, those that have most to do with the ones already
-//! there first. After each, every basin whose stable row is placed must still be able to reach its placed points:
-//! through placed points that it may use, and through empty corners, but no more of these than points that are still to
-//! come and could serve. A breadth-first step is a few shifts of the word. What survives to the end is tried out with the
-//! real trees.
+//! Points are put on the corners of the cube one after the other. Before each, every basin says what is still possible:
+//! its stable row must be able to reach its placed points through placed points that it may use and through empty
+//! corners, but no more of these than there are points still to come that could serve; and what is still to come must
+//! fall where it can be reached. So every row has a set of corners left, and the row with the fewest comes next. A
+//! breadth-first step is a few shifts of the word. What survives to the end is tried out with the real trees.
 //!
-//! Symmetry: the first point gets code 0, and each further one uses new bits from the lowest up.
+//! Symmetry: the first point gets code 0, each further one uses new bits from the lowest up, and spare codes ascend.
 //!
-//! Exact unless it gives up. Cost: exponential in the points; a node costs about the number of basins in all columns.
-//! It is meant for the usual ten rows and gives up on more, where learning from conflicts pays: see
-//! [search](crate::codes::search).
+//! Exact unless it gives up. Cost: exponential in the points; a node costs about the number of basins in all columns,
+//! a microsecond or so. It is meant for the usual ten rows and gives up on many more, where learning from conflicts pays:
+//! see [search](crate::codes::search).
 
 use crate::base::{Code, Effort, Halted};
 use crate::codes::net::{Net, Part};
@@ -49,7 +49,7 @@ pub(super) fn place(
     effort: &Effort,
 ) -> Result<Outcome, Halted> {
     let mut search = Search::new(net, bits, limit, nodes, effort);
-    let found = search.put(0, 0)?;
+    let found = search.put(0)?;
     Ok(match found {
         Some(placement) => Outcome::Found(placement),
         None if search.nodes == 0 => Outcome::GaveUp,
@@ -68,6 +68,10 @@ struct Demand {
     sink: u64,
     /// Points still to come that ways might pass.
     to_come: usize,
+    /// All sources, and whether each may also be passed.
+    starts: Vec<(usize, bool)>,
+    /// The stable row.
+    goal: usize,
 }
 
 struct Search<'a> {
@@ -76,14 +80,13 @@ struct Search<'a> {
     limit: usize,
     nodes: u64,
     effort: &'a Effort<'a>,
-    /// Points in the order in which they are placed.
-    order: Vec<usize>,
     /// For each point, its part in every demand.
     parts: Vec<Vec<u8>>,
     demands: Vec<Demand>,
     /// How much two points have to do with one another.
     ties: Vec<u32>,
     codes: Vec<Code>,
+    placed: Vec<bool>,
     cube: u64,
     occupied: u64,
 }
@@ -96,81 +99,96 @@ impl<'a> Search<'a> {
         let mut ties = vec![0; points * points];
         for field in &net.fields {
             for (b, basin) in field.basins.iter().enumerate() {
-                let mut demand = Demand::default();
+                let mut demand = Demand { goal: basin.goal.at(), ..Demand::default() };
                 for (p, list) in parts.iter_mut().enumerate() {
                     let mine = match field.parts[p] {
                         Part::Basin(own) => usize::from(own) == b,
                         Part::Free => true,
                         Part::Taken => false,
                     };
-                    let is = |points: &[u16]| points.contains(&(p as u16));
                     let mut part = if mine && !basin.barred[p] { PASSES } else { 0 };
-                    part |= if is(&basin.sources) { SOURCE } else { 0 };
-                    part |= if is(&basin.sinks) { SINK } else { 0 };
+                    if basin.sources.contains(&(p as u16)) {
+                        part |= SOURCE;
+                        demand.starts.push((p, part & PASSES != 0));
+                    }
+                    part |= if p == demand.goal { SINK } else { 0 };
                     demand.to_come += usize::from(part & PASSES != 0);
                     list.push(part);
                 }
-                for (&sink, &source) in
-                    basin.sinks.iter().flat_map(|a| basin.sources.iter().map(move |b| (a, b)))
-                {
-                    let (a, b) = (usize::from(sink), usize::from(source));
+                for &(source, _) in &demand.starts {
                     // The fewer detours there are, the more a direct step is needed.
                     let weight = 12 / demand.to_come.clamp(1, 12) as u32 + 1;
-                    ties[a * points + b] += weight;
-                    ties[b * points + a] += weight;
+                    ties[demand.goal * points + source] += weight;
+                    ties[source * points + demand.goal] += weight;
                 }
                 demands.push(demand);
             }
         }
-        let order = order(net, &ties);
         let cube = if bits == BITS { u64::MAX } else { (1 << (1u64 << bits)) - 1 };
-        let codes = vec![Code(0); points];
-        Search { net, bits, limit, nodes, effort, order, parts, demands, ties, codes, cube, occupied: 0 }
+        let (codes, placed) = (vec![Code(0); points], vec![false; points]);
+        Search { net, bits, limit, nodes, effort, parts, demands, ties, codes, placed, cube, occupied: 0 }
     }
 
-    /// Places the points from `depth` on; `used` bits are in use so far.
-    fn put(&mut self, depth: usize, used: usize) -> Result<Option<Placement>, Halted> {
-        let Some(&point) = self.order.get(depth) else {
+    /// Places what is not placed yet; `used` bits are in use so far.
+    fn put(&mut self, used: usize) -> Result<Option<Placement>, Halted> {
+        self.effort.spend(self.demands.len() as u64 / 16 + 1)?;
+        let Some(domains) = self.domains() else { return Ok(None) };
+        let Some(point) = self.next(&domains) else {
             return settle(self.net, &self.codes, self.bits, self.limit, self.effort);
         };
-        for (code, bits) in self.candidates(point, depth, used) {
+        for (code, bits) in self.candidates(point, domains[point], used) {
             if self.nodes == 0 {
                 return Ok(None);
             }
             self.nodes -= 1;
-            self.effort.spend(self.demands.len() as u64 / 16 + 1)?;
             self.set(point, code, true);
-            if self.hopeful()
-                && let Some(found) = self.put(depth + 1, bits)?
-            {
-                return Ok(Some(found));
-            }
+            let found = self.put(bits)?;
             self.set(point, code, false);
+            if found.is_some() {
+                return Ok(found);
+            }
         }
         Ok(None)
     }
 
+    /// The point to place next: the one with the fewest corners left, of these the one with the strongest ties to placed
+    /// ones. Spare codes come last.
+    fn next(&self, domains: &[u64]) -> Option<usize> {
+        let points = self.net.len();
+        let bound = |p: usize| -> u32 {
+            let ties = &self.ties[p * points..(p + 1) * points];
+            ties.iter()
+                .zip(&self.placed)
+                .filter(|&(_, &placed)| placed || self.occupied == 0)
+                .map(|(t, _)| t)
+                .sum()
+        };
+        let rows = (0..points).filter(|&p| !self.placed[p] && self.net.owner[p].is_some());
+        rows.min_by_key(|&p| (domains[p].count_ones(), std::cmp::Reverse(bound(p))))
+            .or_else(|| (0..points).find(|&p| !self.placed[p]))
+    }
+
     /// Corners for a point, the nearest to what it must reach first, with the number of bits then in use.
-    fn candidates(&self, point: usize, depth: usize, used: usize) -> Vec<(u32, usize)> {
-        if depth == 0 {
+    fn candidates(&self, point: usize, domain: u64, used: usize) -> Vec<(u32, usize)> {
+        if self.occupied == 0 {
             return vec![(0, 0)];
         }
-        let placed = &self.order[..depth];
         // Spare codes are alike: they ascend.
-        let before =
-            placed.last().filter(|&&p| self.net.owner[p].is_none() && self.net.owner[point].is_none());
-        let floor = before.map_or(0, |&p| self.codes[p].0 + 1);
+        let spare = self.net.owner[point].is_none();
+        let before = point.checked_sub(1).filter(|&p| spare && self.net.owner[p].is_none());
+        let floor = before.map_or(0, |p| self.codes[p].0 + 1);
+        let points = self.net.len();
         let mut list: Vec<(u32, u32, usize)> = Vec::new();
         for code in floor..1 << self.bits {
             let fresh = code >> used;
             // New bits from the lowest up: all ones.
             let lowest_up = fresh & (fresh + 1) == 0 || before.is_some();
-            if self.occupied >> code & 1 == 1 || !lowest_up {
+            if domain >> code & 1 == 0 || !lowest_up {
                 continue;
             }
-            let cost = placed
-                .iter()
-                .map(|&p| self.ties[point * self.net.len() + p] * self.codes[p].distance(Code(code)))
+            let cost = (0..points)
+                .filter(|&p| self.placed[p])
+                .map(|p| self.ties[point * points + p] * self.codes[p].distance(Code(code)))
                 .sum();
             let bits = used.max((u32::BITS - code.leading_zeros()) as usize);
             list.push((cost, code, bits));
@@ -182,6 +200,7 @@ impl<'a> Search<'a> {
     fn set(&mut self, point: usize, code: u32, on: bool) {
         let corner = 1u64 << code;
         self.codes[point] = Code(code);
+        self.placed[point] = on;
         self.occupied ^= corner;
         for (demand, &part) in self.demands.iter_mut().zip(&self.parts[point]) {
             if part & PASSES != 0 {
@@ -197,54 +216,69 @@ impl<'a> Search<'a> {
         }
     }
 
-    fn hopeful(&self) -> bool {
+    /// The corners that each point may still take, as far as single basins can tell; `None` if that is none for some
+    /// point, or if a placed point is cut off.
+    fn domains(&self) -> Option<Vec<u64>> {
         let empty = self.cube & !self.occupied;
-        self.demands
-            .iter()
-            .all(|demand| demand.sink == 0 || demand.sources == 0 || self.reaches(demand, empty))
+        let mut domains = vec![empty; self.net.len()];
+        for demand in &self.demands {
+            if demand.sink != 0 {
+                let [all, fewer] = self.flood(demand, demand.sink, empty);
+                if demand.sources & !all != 0 {
+                    return None;
+                }
+                for &(start, passes) in &demand.starts {
+                    // A point that is to come is no help to itself.
+                    domains[start] &= if passes { fewer } else { all };
+                }
+            } else if demand.sources != 0 {
+                let one = demand.sources & demand.sources.wrapping_neg();
+                domains[demand.goal] &= self.flood(demand, one, empty)[1];
+            }
+        }
+        let lost = |p: usize| !self.placed[p] && domains[p] == 0;
+        if (0..self.net.len()).any(lost) { None } else { Some(domains) }
     }
 
-    /// Whether the stable row of a demand can be reached from all its placed sources.
-    fn reaches(&self, demand: &Demand, empty: u64) -> bool {
-        if demand.to_come == 0 || demand.to_come > COUNTED {
-            let open = if demand.to_come == 0 { demand.passes } else { demand.passes | empty };
-            let (mut reached, mut got) = (demand.sink, 0);
+    /// All corners at the end of a way from `start` within the limit: with as many empty corners on the way as there are
+    /// points to come, and with one fewer.
+    fn flood(&self, demand: &Demand, start: u64, empty: u64) -> [u64; 2] {
+        let budget = demand.to_come;
+        if budget == 0 || budget > COUNTED {
+            let open = if budget == 0 { demand.passes } else { demand.passes | empty };
+            let (mut reached, mut got) = (start, 0);
             for _ in 0..self.limit {
                 let next = self.spread(reached);
-                got |= next & demand.sources;
-                if got == demand.sources {
-                    return true;
-                }
+                got |= next;
                 let grown = reached | (next & open);
                 if grown == reached {
-                    return false;
+                    break;
                 }
                 reached = grown;
             }
-            return false;
+            return [got; 2];
         }
         // Reached with at most j empty corners on the way.
-        let mut reached = [demand.sink; COUNTED + 1];
-        let mut got = 0;
+        let mut reached = [start; COUNTED + 1];
+        let mut got = [0; 2];
         for _ in 0..self.limit {
-            let next = reached.map(|corners| self.spread(corners));
-            got |= next[demand.to_come] & demand.sources;
-            if got == demand.sources {
-                return true;
-            }
             let mut grown = reached;
-            for j in 0..=demand.to_come {
-                grown[j] |= next[j] & demand.passes;
-                if j > 0 {
-                    grown[j] |= grown[j - 1] | (next[j - 1] & empty);
+            let mut next = 0;
+            for j in 0..=budget {
+                let through = next & empty;
+                next = self.spread(reached[j]);
+                grown[j] |= next & demand.passes | through;
+                if j + 1 == budget {
+                    got[1] |= next;
                 }
             }
+            got[0] |= next;
             if grown == reached {
-                return false;
+                break;
             }
             reached = grown;
         }
-        false
+        got
     }
 
     /// All corners one bit away from some of the given ones.
@@ -263,20 +297,4 @@ impl<'a> Search<'a> {
         }
         next
     }
-}
-
-/// Rows by their ties to the ones before, the one with most ties first; spare codes last.
-fn order(net: &Net, ties: &[u32]) -> Vec<usize> {
-    let points = net.len();
-    let mut order: Vec<usize> = Vec::with_capacity(points);
-    let mut rest: Vec<usize> = (0..points).filter(|&p| net.owner[p].is_some()).collect();
-    let total = |p: usize| -> u32 { ties[p * points..(p + 1) * points].iter().sum() };
-    while !rest.is_empty() {
-        let bound = |p: usize| -> u32 { order.iter().map(|&o| ties[p * points + o]).sum() };
-        let best = (0..rest.len()).rev().max_by_key(|&i| (bound(rest[i]), total(rest[i]))).unwrap_or(0);
-        let point = rest.remove(best);
-        order.push(point);
-    }
-    order.extend((0..points).filter(|&p| net.owner[p].is_none()));
-    order
 }
