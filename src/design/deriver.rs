@@ -28,12 +28,16 @@ pub struct Deriver {
     reduced: Kept<Reduced, Arc<Reduced>>,
     coded: Kept<(Arc<Reduced>, Method, u64), Outcome<Coded>>,
     races: Kept<(Arc<Reduced>, Arc<Coded>), Arc<Races>>,
-    equations: Kept<(Arc<Spec>, Arc<Reduced>, Arc<Coded>, LogicChoice, u64), Arc<Equations>>,
-    proof: Kept<(Arc<Spec>, Arc<Reduced>, Arc<Coded>, Arc<Equations>), Arc<Proof>>,
+    equations: Kept<LogicInput, Arc<Equations>>,
+    proof: Kept<ProofInput, Arc<Proof>>,
 }
 
 /// Findings of the check, and the specification if there is no error among them.
 type Checked = (Arc<Vec<Finding>>, Option<Arc<Spec>>);
+/// What the equations are made from, with the budget.
+type LogicInput = (Arc<Spec>, Arc<Reduced>, Arc<Coded>, LogicChoice, u64);
+/// What is proved against what.
+type ProofInput = (Arc<Spec>, Arc<Reduced>, Arc<Coded>, Arc<Equations>);
 /// A stage's value, or why there is none.
 type Outcome<T> = Result<Arc<T>, Vec<Finding>>;
 
