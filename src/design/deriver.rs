@@ -28,16 +28,16 @@ pub struct Deriver {
     reduced: Kept<Reduced, Arc<Reduced>>,
     coded: Kept<(Arc<Reduced>, Method, u64), Outcome<Coded>>,
     races: Kept<(Arc<Reduced>, Arc<Coded>), Arc<Races>>,
-    equations: Kept<LogicInput, Arc<Equations>>,
-    proof: Kept<ProofInput, Arc<Proof>>,
+    equations: Kept<(Machine, LogicChoice, u64), Arc<Equations>>,
+    proof: Kept<(Machine, Arc<Equations>), Arc<Proof>>,
 }
 
-/// Findings of the check, and the specification if there is no error among them.
+/// What the check gives: findings, and the table if none of them is an error.
 type Checked = (Arc<Vec<Finding>>, Option<Arc<Spec>>);
-/// What the equations are made from, with the budget.
-type LogicInput = (Arc<Spec>, Arc<Reduced>, Arc<Coded>, LogicChoice, u64);
-/// What is proved against what.
-type ProofInput = (Arc<Spec>, Arc<Reduced>, Arc<Coded>, Arc<Equations>);
+
+/// What the equations are made from and held against.
+type Machine = (Arc<Spec>, Arc<Reduced>, Arc<Coded>);
+
 /// A stage's value, or why there is none.
 type Outcome<T> = Result<Arc<T>, Vec<Finding>>;
 
@@ -60,8 +60,8 @@ impl Deriver {
         let equations = self.write(project, &spec, &reduced, &coded, settings, design)?;
         design.cost = Some(gates::cost(&equations, &project.choices.gates));
         let proof = self.proof.get(
-            (spec, reduced, coded, equations),
-            |(s, r, c, e)| Arc::new(proof::prove(s, r, c, e)),
+            ((spec, reduced, coded), equations),
+            |((s, r, c), e)| Arc::new(proof::prove(s, r, c, e)),
             || true,
         );
         report::proof_faults(&proof, &mut design.findings);
@@ -146,8 +146,8 @@ impl Deriver {
         design: &mut Design,
     ) -> Option<Arc<Equations>> {
         let equations = self.equations.get(
-            (spec.clone(), reduced.clone(), coded.clone(), project.choices.logic.clone(), settings.steps),
-            |(s, r, c, choice, _)| Arc::new(logic::equations(s, r, c, choice, &settings.effort())),
+            ((spec.clone(), reduced.clone(), coded.clone()), project.choices.logic.clone(), settings.steps),
+            |((s, r, c), choice, _)| Arc::new(logic::equations(s, r, c, choice, &settings.effort())),
             || !settings.stop.raised(),
         );
         report::clashes(&equations, &mut design.findings);

@@ -11,7 +11,7 @@ use crate::codes::values::Coded;
 use crate::design::values::Design;
 use crate::gates::values::Cost;
 use crate::handoff::lines::to_lines;
-use crate::handoff::words::reasons;
+use crate::handoff::words::{Reason, reasons};
 use crate::logic::values::{Equations, EssentialHazard};
 use crate::merge::values::{Merged, Pair, PairTable, Reduced, RowSet, Verdict};
 use crate::project::Project;
@@ -395,7 +395,7 @@ fn equation_part<'a>(reduced: &'a Reduced, equations: &'a Equations) -> Equation
                     .iter()
                     .map(|p| ReasonPart {
                         hazard_only: p.hazard_only,
-                        texts: reasons(equations, reduced, f, p),
+                        texts: reasons(equations, reduced, f, p).iter().map(Reason::text).collect(),
                     })
                     .collect(),
             })

@@ -95,29 +95,69 @@ pub fn cube_words(variables: &[String], cube: Cube) -> String {
     if parts.is_empty() { "every point".to_owned() } else { parts.join(", ") }
 }
 
-/// Why a product or sum stands in its function, one reason a line; the most telling first.
+/// A reason for a product: what it does, and in which change or at which points.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Reason {
+    /// `keeps Y1 at 1 while`, `makes Y1 1 at`.
+    pub duty: String,
+    /// `D falls (row A, column 10)`, `D = 1, y1 = 0`; empty where the duty says all.
+    pub place: String,
+}
+
+impl Reason {
+    /// Both parts on one line.
+    pub fn text(&self) -> String {
+        format!("{} {}", self.duty, self.place).trim_end().to_owned()
+    }
+}
+
+/// Why a product or sum stands in its function: what it alone holds, without repeats.
 pub fn reasons(
     equations: &Equations,
     reduced: &Reduced,
     function: &Function,
     product: &Product,
-) -> Vec<String> {
-    let mut texts: Vec<String> = Vec::new();
+) -> Vec<Reason> {
+    let mut all: Vec<Reason> = Vec::new();
     for required in product.alone.iter().filter_map(|&i| function.required.get(i)) {
-        for text in asked_by(equations, reduced, function, required) {
-            if !texts.contains(&text) {
-                texts.push(text);
+        for reason in asked_by(equations, reduced, function, required) {
+            if !all.contains(&reason) {
+                all.push(reason);
             }
         }
     }
-    if texts.is_empty() {
-        texts.push(if equations.shared {
-            "holds nothing alone here: taken over from another function".to_owned()
+    if all.is_empty() {
+        let duty = if equations.shared {
+            "holds nothing alone here: taken over from another function"
         } else {
-            "what it holds is held by others too, but not all of it by the same ones".to_owned()
-        });
+            "what it holds is held by others too, but not all of it by the same ones"
+        };
+        all.push(Reason { duty: duty.to_owned(), place: String::new() });
     }
-    texts
+    all
+}
+
+/// Reasons with the same duty said in one breath, `most` places of each: `keeps Y1 at 1 while a, b and 3 more`.
+pub fn gathered(reasons: &[Reason], most: usize) -> String {
+    let mut groups: Vec<(&str, Vec<&str>)> = Vec::new();
+    for reason in reasons {
+        match groups.iter_mut().find(|(duty, _)| *duty == reason.duty) {
+            Some((_, places)) => places.push(&reason.place),
+            None => groups.push((&reason.duty, vec![&reason.place])),
+        }
+    }
+    let texts: Vec<String> = groups
+        .iter()
+        .map(|(duty, places)| {
+            let more = places.len().saturating_sub(most);
+            let mut told: Vec<String> = places.iter().take(most).map(|p| (*p).to_owned()).collect();
+            if more > 0 {
+                told.push(format!("{more} more"));
+            }
+            format!("{duty} {}", listed(&told)).trim_end().to_owned()
+        })
+        .collect();
+    texts.join("; ")
 }
 
 /// What asks for a required cube.
@@ -126,14 +166,11 @@ fn asked_by(
     reduced: &Reduced,
     function: &Function,
     required: &Required,
-) -> Vec<String> {
+) -> Vec<Reason> {
     if required.why.is_empty() {
         let value = u8::from(equations.shape == Shape::SumOfProducts);
-        return vec![format!(
-            "makes {} {value} at {}",
-            function.name,
-            cube_words(&equations.variables, required.cube)
-        )];
+        let duty = format!("makes {} {value} at", function.name);
+        return vec![Reason { duty, place: cube_words(&equations.variables, required.cube) }];
     }
     required
         .why
@@ -144,31 +181,32 @@ fn asked_by(
 }
 
 /// What a function must do in a transition.
-fn transition_words(equations: &Equations, reduced: &Reduced, function: &Function, t: &Transition) -> String {
+fn transition_words(equations: &Equations, reduced: &Reduced, function: &Function, t: &Transition) -> Reason {
     let name = &function.name;
     let duty = match t.values {
-        (true, true) => format!("keeps {name} at 1"),
-        (false, false) => format!("keeps {name} at 0"),
-        (false, true) => format!("lets {name} rise once"),
-        (true, false) => format!("lets {name} fall once"),
+        (true, true) => format!("keeps {name} at 1 while"),
+        (false, false) => format!("keeps {name} at 0 while"),
+        (false, true) => format!("lets {name} rise once while"),
+        (true, false) => format!("lets {name} fall once while"),
     };
     let what = change(&equations.variables, t.start, t.end);
     let Some(cause) = reduced.moves.get(t.cause) else {
-        return format!("{duty} while {what}");
+        return Reason { duty, place: what };
     };
     let table = &reduced.table;
-    let from = table.name(cause.from.row);
-    match t.phase {
+    let place = match t.phase {
         Phase::Input => {
             let column = Column((t.start & mask(equations.inputs)) as u16);
-            format!("{duty} while {what} in row {from}, column {}", table.column_text(column))
+            format!("{what} (row {}, column {})", table.name(cause.from.row), table.column_text(column))
         }
         Phase::State(_) => format!(
-            "{duty} while {what} on the way from row {from} to {} in column {}",
+            "{what} (row {} to {}, column {})",
+            table.name(cause.from.row),
             table.name(cause.to),
             table.column_text(cause.column)
         ),
-    }
+    };
+    Reason { duty, place }
 }
 
 /// Where an essential hazard stands: `row A, column 00, D rises`, and for bursts what the far end may still see.

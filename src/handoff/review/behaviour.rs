@@ -84,9 +84,8 @@ pub fn table_lines(
     columns: &[Column],
     mark: impl Fn(Row, Column) -> &'static str,
 ) -> Vec<String> {
-    let heads: Vec<String> = std::iter::once("row".to_owned())
-        .chain(columns.iter().map(|c| format!(" {}", table.column_text(*c))))
-        .collect();
+    let heads = columns.iter().map(|&c| format!(" {}", table.column_text(c)));
+    let heads: Vec<String> = std::iter::once("row".to_owned()).chain(heads).collect();
     let rows: Vec<Vec<String>> = table
         .rows()
         .map(|r| {
@@ -97,8 +96,28 @@ pub fn table_lines(
     blocks(&heads, &rows, "  ")
 }
 
+/// The same for a table whose outputs belong to rows: they stand in a column of their own.
+pub fn table_lines_per_row(table: &FlowTable, columns: &[Column]) -> Vec<String> {
+    let heads = columns.iter().map(|&c| format!(" {}", table.column_text(c)));
+    let heads: Vec<String> = ["row".to_owned(), "outputs".to_owned()].into_iter().chain(heads).collect();
+    let rows: Vec<Vec<String>> = table
+        .rows()
+        .map(|r| {
+            let word =
+                columns.first().map_or(String::new(), |&c| table.cell(r, c).outputs.text(table.outputs));
+            let cells = columns.iter().map(|&c| match table.next(r, c) {
+                Some(next) if next == r => format!("({})", table.name(next)),
+                Some(next) => format!(" {}", table.name(next)),
+                None => " .".to_owned(),
+            });
+            [table.name(r).to_owned(), word].into_iter().chain(cells).collect()
+        })
+        .collect();
+    blocks(&heads, &rows, "  ")
+}
+
 /// `(a) 01` stable, ` b  -1` unstable, ` -  0-` outputs alone, ` .` unspecified.
-pub fn cell_text(table: &FlowTable, row: Row, column: Column) -> String {
+fn cell_text(table: &FlowTable, row: Row, column: Column) -> String {
     let cell = table.cell(row, column);
     let outputs = cell.outputs.text(table.outputs);
     match cell.next {

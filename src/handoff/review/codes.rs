@@ -2,7 +2,7 @@
 
 use crate::base::{Bound, Code};
 use crate::codes::values::{Coded, Role, Step, Way};
-use crate::handoff::plain::{align, blocks, counted, wrap};
+use crate::handoff::plain::{align, blocks, counted, listed, wrap};
 use crate::handoff::review::Page;
 use crate::handoff::review::behaviour::used_columns;
 use crate::handoff::words::method_name;
@@ -75,15 +75,21 @@ fn ways(page: &mut Page, reduced: &Reduced, coded: &Coded) {
         };
         codes.join(joint)
     };
-    let rows: Vec<Vec<String>> = coded
-        .ways
-        .iter()
-        .map(|w| {
-            vec![
-                format!("{} to {}", table.name(w.from), table.name(w.to)),
-                format!("column {}", table.column_text(w.column)),
-                text(w),
-            ]
+    // The same way in several columns is one line.
+    let mut rows: Vec<(String, String, Vec<String>)> = Vec::new();
+    for way in &coded.ways {
+        let (ends, path) = (format!("{} to {}", table.name(way.from), table.name(way.to)), text(way));
+        let column = table.column_text(way.column);
+        match rows.iter_mut().find(|(e, p, _)| *e == ends && *p == path) {
+            Some((.., columns)) => columns.push(column),
+            None => rows.push((ends, path, vec![column])),
+        }
+    }
+    let rows: Vec<Vec<String>> = rows
+        .into_iter()
+        .map(|(ends, path, columns)| {
+            let word = if columns.len() == 1 { "column" } else { "columns" };
+            vec![ends, path, format!("{word} {}", listed(&columns))]
         })
         .collect();
     page.lines(align(&rows, "  ", &[]));

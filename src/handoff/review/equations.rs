@@ -5,12 +5,12 @@ use crate::codes::values::Coded;
 use crate::handoff::notation::{Notation, joint, term, terms};
 use crate::handoff::plain::{WIDTH, counted, listed, wrap};
 use crate::handoff::review::Page;
-use crate::handoff::words::{form_name, hazard_words, racing_variables, reasons, shape_name};
+use crate::handoff::words::{form_name, gathered, hazard_words, racing_variables, reasons, shape_name};
 use crate::logic::values::{Equations, EssentialHazard, Function};
 use crate::merge::values::Reduced;
 use crate::project::choices::Shape;
 
-/// Most reasons that are written out for one term.
+/// Most places that are written out for what a term does.
 const REASONS: usize = 3;
 
 pub fn write(page: &mut Page, reduced: &Reduced, coded: &Coded, equations: &Equations, notation: Notation) {
@@ -38,7 +38,7 @@ pub fn write(page: &mut Page, reduced: &Reduced, coded: &Coded, equations: &Equa
     }
     for note in &equations.notes {
         page.gap();
-        page.text(note);
+        page.text(&format!("Note: {note}."));
     }
     essential(page, reduced, coded, equations);
 }
@@ -102,11 +102,7 @@ fn terms_with_reasons(
     let texts: Vec<String> = function.products.iter().map(|p| term(notation, equations, p.cube)).collect();
     let width = texts.iter().map(|t| t.chars().count()).max().unwrap_or(0).min(40);
     for (product, text) in function.products.iter().zip(&texts) {
-        let all = reasons(equations, reduced, function, product);
-        let mut told = all.iter().take(REASONS).cloned().collect::<Vec<_>>().join("; ");
-        if all.len() > REASONS {
-            told.push_str(&format!("; and {} more", all.len() - REASONS));
-        }
+        let mut told = gathered(&reasons(equations, reduced, function, product), REASONS);
         if product.hazard_only {
             told = format!("for hazards alone: {told}");
         }

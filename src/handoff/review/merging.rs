@@ -5,7 +5,7 @@ use std::collections::BTreeMap;
 use crate::base::{Bound, Row};
 use crate::handoff::plain::{align, counted, listed, wrap};
 use crate::handoff::review::Page;
-use crate::handoff::review::behaviour::{table_lines, used_columns};
+use crate::handoff::review::behaviour::{table_lines, table_lines_per_row, used_columns};
 use crate::merge::values::{Merged, Pair, PairTable, Reduced, RowSet, Verdict};
 use crate::project::choices::OutputStyle;
 use crate::spec::values::{FlowTable, Spec};
@@ -279,5 +279,9 @@ fn reduced_table(page: &mut Page, primitive: &FlowTable, reduced: &Reduced) {
         if reduced.outputs == OutputStyle::PerRow { ", outputs belong to rows" } else { "" }
     ));
     page.gap();
-    page.lines(table_lines(table, &used_columns(table, false), |_, _| ""));
+    let columns = used_columns(table, false);
+    page.lines(match reduced.outputs {
+        OutputStyle::PerCell => table_lines(table, &columns, |_, _| ""),
+        OutputStyle::PerRow => table_lines_per_row(table, &columns),
+    });
 }

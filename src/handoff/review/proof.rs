@@ -110,11 +110,15 @@ fn cost(page: &mut Page, project: &Project, design: &Design) {
 
 fn caution(page: &mut Page, project: &Project, design: &Design, proof: &Proof) {
     page.gap();
-    let change = match project.discipline {
-        Discipline::Single => "one input changes at a time, and only after the circuit has settled",
-        Discipline::Burst => "after a burst, inputs change only when the circuit has settled",
-    };
-    let mut text = format!("Holds as long as {change}.");
+    let mut text = match project.discipline {
+        Discipline::Single => {
+            "Holds as long as one input changes at a time, and only after the circuit has settled."
+        }
+        Discipline::Burst => {
+            "Holds as long as a burst begins only after the circuit has settled from the one before."
+        }
+    }
+    .to_owned();
     if !proof.slow.is_empty() {
         let names: Vec<String> = proof.slow.iter().map(|i| format!("y{}", i + 1)).collect();
         text.push_str(&format!(
