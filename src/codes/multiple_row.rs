@@ -7,22 +7,34 @@
 //! 2^m - 1 ways.
 //!
 //! A construction: nothing is searched. Cost: linear in codes times columns, and there are 2^(2^m - 1) codes: 8 with
-//! 3 bits, 128 with 7, 32768 with 15.
+//! 3 bits, 128 with 7. Nine rows would need 15 bits and 32,768 codes, whose equations take minutes and gigabytes: the
+//! method stops at eight rows.
 
-use crate::base::{Bound, Code, Finding};
+use crate::base::{Bound, Code, Finding, Level};
 use crate::codes::fit::{bits_for, room, too_many};
 use crate::codes::table::{Draft, finish};
 use crate::codes::values::{Coded, Step, Way};
 use crate::merge::values::Reduced;
 use crate::project::choices::Method;
 
+/// Most rows that get codes by this method.
+const MOST_ROWS: usize = 8;
+
 /// Multiple-row codes.
 ///
 /// # Errors
-/// `too-many-variables`: beyond 16 rows, or where the inputs leave too little room.
+/// `too-many-rows`: beyond eight rows. `too-many-variables`: where the inputs leave too little room.
 pub(super) fn assign(reduced: &Reduced) -> Result<Coded, Vec<Finding>> {
     let table = &reduced.table;
     let rows = table.len();
+    if rows > MOST_ROWS {
+        let text = format!(
+            "The multiple-row method is offered up to {MOST_ROWS} rows, and this design has {rows}: with 15 state \
+             variables and thousands of codes the equations would be out of reach. Use the single-step, shared-row \
+             or one-hot method."
+        );
+        return Err(vec![Finding::new(Level::Error, "too-many-rows", text)]);
+    }
     let bits = (1usize << bits_for(rows)) - 1;
     if bits > room(reduced) {
         let why = " (the next power of two, less one)";

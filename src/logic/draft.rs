@@ -4,6 +4,8 @@
 //! For product-of-sums everything is said of the zeros: a sum is 0 exactly on a cube of zeros, and the hazard conditions
 //! are those of the complement. Linear in points and transitions, times the points of transitions of several bits.
 
+use std::borrow::Cow;
+
 use crate::base::Code;
 use crate::logic::cubes::gather;
 use crate::logic::expand::{Expander, Rules};
@@ -113,31 +115,31 @@ impl Draft {
 
     /// What one transition asks for.
     fn span(&mut self, table: &Table, span: &Span, asked: &mut Asked) {
-        let mut span = span.clone();
+        let mut inside: Cow<'_, [usize]> = Cow::Borrowed(&span.inside);
+        let mut end = span.end;
         if let Some(i) = set_or_reset(self.target)
-            && flips(table, &span, i)
+            && flips(table, span, i)
             && self.values[span.start] == Value::On
         {
             // Only the face on which the latch has not yet switched binds the function that switches it.
             let far = table.points[span.end] ^ 1 << (table.inputs + i);
-            let Some(end) = table.find(far) else { return };
-            if end == span.start {
-                return;
+            match table.find(far) {
+                Some(face) if face != span.start => end = face,
+                _ => return,
             }
-            span.end = end;
-            let face = table.cube(&span);
-            span.inside.retain(|&p| face.holds(table.points[p]));
+            let face = table.cube(span.start, end);
+            inside = span.inside.iter().copied().filter(|&p| face.holds(table.points[p])).collect();
         }
-        let (from, to) = (self.values[span.start], self.values[span.end]);
+        let part = Stretch { start: span.start, end, inside: &inside, cube: table.cube(span.start, end) };
+        let (from, to) = (self.values[span.start], self.values[end]);
         let one = |v: Value| (v == Value::On) == asked.ones;
         if from == Value::Free || to == Value::Free {
             // The side of a latch that may be on while it idles must not pulse once the change has begun to end that. A
             // product can do so only where several bits change; two sums can even at one bit.
             let idle = set_or_reset(self.target).is_some() && from == Value::Free && to == Value::Off;
-            if idle && !(asked.ones && span.inside.is_empty()) {
-                let start = table.points[if asked.ones { span.start } else { span.end }];
-                let cube = Privileged { cube: table.cube(&span), start };
-                asked.fences.push(Fence { cube, why: None });
+            if idle && !(asked.ones && inside.is_empty()) {
+                let start = table.points[if asked.ones { span.start } else { end }];
+                asked.fences.push(Fence { cube: Privileged { cube: part.cube, start }, why: None });
             }
             return;
         }
@@ -146,10 +148,10 @@ impl Draft {
             cause: span.cause,
             phase: span.phase,
             start: table.points[span.start],
-            end: table.points[span.end],
+            end: table.points[end],
             values: (from == Value::On, to == Value::On),
         });
-        if !self.steady(table, &span) {
+        if !self.steady(table, part) {
             self.faults.push(Fault {
                 target: self.target,
                 moves: vec![span.cause],
@@ -161,20 +163,20 @@ impl Draft {
         }
         match (one(from), one(to)) {
             (false, false) => {}
-            (true, true) => asked.cubes.push((self.shadow(table.cube(&span)), why)),
-            (true, false) => self.anchored(table, &span, span.start, why, asked),
-            (false, true) => self.anchored(table, &span, span.end, why, asked),
+            (true, true) => asked.cubes.push((self.shadow(part.cube), why)),
+            (true, false) => self.anchored(table, part, part.start, why, asked),
+            (false, true) => self.anchored(table, part, part.end, why, asked),
         }
     }
 
     /// Whether the function changes at most once on every way through a transition.
-    fn steady(&self, table: &Table, span: &Span) -> bool {
-        let new = self.values[span.end];
-        let end = table.points[span.end];
-        if self.values[span.start] == new {
-            return span.inside.iter().all(|&p| self.values[p] == new || self.values[p] == Value::Free);
+    fn steady(&self, table: &Table, part: Stretch<'_>) -> bool {
+        let new = self.values[part.end];
+        let end = table.points[part.end];
+        if self.values[part.start] == new {
+            return part.inside.iter().all(|&p| self.values[p] == new || self.values[p] == Value::Free);
         }
-        span.inside.iter().filter(|&&p| self.values[p] == new).all(|&p| {
+        part.inside.iter().filter(|&&p| self.values[p] == new).all(|&p| {
             let ahead = table.points[p] ^ end;
             (0..32).map(|b| 1u32 << b).filter(|bit| ahead & bit != 0).all(|bit| {
                 table
@@ -186,15 +188,13 @@ impl Draft {
 
     /// A change between 0 and 1 that is held from one side only: `anchor` is the end of the cube where the wanted value
     /// stands.
-    fn anchored(&self, table: &Table, span: &Span, anchor: usize, why: usize, asked: &mut Asked) {
-        let whole = table.cube(span);
+    fn anchored(&self, table: &Table, part: Stretch<'_>, anchor: usize, why: usize, asked: &mut Asked) {
         let base = table.points[anchor];
         let wanted = self.values[anchor];
-        let all = mask(table.variables());
-        let free = all & !whole.care;
+        let free = mask(table.variables()) & !part.cube.care;
         let mut holes: Vec<Cube> = Vec::new();
         let mut fenced = false;
-        for &p in &span.inside {
+        for &p in part.inside {
             if self.values[p] != wanted && self.values[p] != Value::Free {
                 holes.push(Cube { care: free, ones: table.points[p] & free });
             } else if p != anchor {
@@ -204,16 +204,16 @@ impl Draft {
         if !fenced {
             return asked.cubes.push((self.shadow(Cube::at(base, table.variables())), why));
         }
-        let mut parts = Vec::new();
+        let mut stretches = Vec::new();
         let seed = Cube { care: free, ones: base & free };
         let rules = Rules { off: &holes, privileged: &[] };
         // The cube's own points bound this; it needs no budget.
-        let _ = Expander::default().expand(seed, rules, u64::MAX, &mut parts);
-        for part in parts {
-            let cube = Cube { care: whole.care | part.care, ones: whole.ones | part.ones };
+        let _ = Expander::default().expand(seed, rules, u64::MAX, &mut stretches);
+        for stretch in stretches {
+            let cube = Cube { care: part.cube.care | stretch.care, ones: part.cube.ones | stretch.ones };
             asked.cubes.push((self.shadow(cube), why));
         }
-        let cube = Privileged { cube: self.shadow(whole), start: base & self.mask };
+        let cube = Privileged { cube: self.shadow(part.cube), start: base & self.mask };
         asked.fences.push(Fence { cube, why: Some(why) });
     }
 
@@ -221,6 +221,16 @@ impl Draft {
     fn shadow(&self, cube: Cube) -> Cube {
         Cube { care: cube.care & self.mask, ones: cube.ones & self.mask }
     }
+}
+
+/// A transition as far as it binds a function.
+#[derive(Clone, Copy)]
+struct Stretch<'s> {
+    start: usize,
+    end: usize,
+    /// All its points, if it is more than an edge.
+    inside: &'s [usize],
+    cube: Cube,
 }
 
 /// What the transitions ask of the products.

@@ -4,6 +4,8 @@ use crate::base::Effort;
 use crate::codes::values::Coded;
 use crate::logic::draft::{Draft, values};
 use crate::logic::finish::finish;
+use crate::logic::minimise::{Minimum, Problem};
+use crate::logic::share::share;
 use crate::logic::table::{Fault, Table};
 use crate::logic::values::{Clash, Equations, Function, Phase, Target, mask};
 use crate::logic::{essential, outputs, words};
@@ -15,7 +17,8 @@ use crate::spec::values::Spec;
 ///
 /// Every function is a smallest one, or its [`bound`](Function::bound) says that `effort` ran out first; what cannot be done
 /// is a [`Clash`], and its function is missing. One step of effort is about a microsecond; with no effort left the
-/// result is still right and free of hazards, but not small. Inputs and state variables together: at most 32.
+/// result is still right and free of hazards, but not small. With products shared, the bound of each function tells of
+/// all functions together. Inputs and state variables together: at most 32.
 pub fn equations(
     spec: &Spec,
     reduced: &Reduced,
@@ -64,14 +67,30 @@ struct Stage<'s, 'e> {
 impl Stage<'_, '_> {
     fn functions(&mut self) -> Vec<Function> {
         let targets = self.targets();
-        let mut functions = Vec::new();
+        // Sharing comes last and needs something to work with.
+        let reserve = if self.choice.share { self.effort.left() / 2 } else { 0 };
+        let mut names = Vec::new();
+        let mut drafts = Vec::new();
+        let mut minima = Vec::new();
         for (n, &target) in targets.iter().enumerate() {
             // What is left is shared out, so that one hard function does not leave the others unproved.
             let left = self.effort.left();
-            let keep = left - left / (targets.len() - n) as u64;
-            functions.extend(self.function(target, keep));
+            let keep = left - left.saturating_sub(reserve) / (targets.len() - n) as u64;
+            let name = words::name(target, &self.spec.signals);
+            if let Some((draft, minimum)) = self.function(target, &name, keep) {
+                names.push(name);
+                drafts.push(draft);
+                minima.push(minimum);
+            }
         }
-        functions
+        if self.choice.share && drafts.len() > 1 {
+            let problems: Vec<&Problem> = drafts.iter().map(|d| &d.problem).collect();
+            minima = share(&problems, &minima, self.effort);
+        }
+        let finished = drafts.into_iter().zip(names).zip(minima);
+        finished
+            .map(|((draft, name), m)| finish(draft, name, self.choice.shape, m.products, m.bound))
+            .collect()
     }
 
     fn targets(&self) -> Vec<Target> {
@@ -82,14 +101,13 @@ impl Stage<'_, '_> {
         excitations.chain((0..self.reduced.table.outputs).map(Target::Output)).collect()
     }
 
-    fn function(&mut self, target: Target, keep: u64) -> Option<Function> {
-        let name = words::name(target, &self.spec.signals);
+    fn function(&mut self, target: Target, name: &str, keep: u64) -> Option<(Draft, Minimum)> {
         let draft = self.draft(target);
         let faults: Vec<&Fault> = self.table.faults.iter().filter(|f| same(f.target, target)).collect();
         let faults: Vec<Clash> = faults
             .into_iter()
             .chain(&draft.faults)
-            .map(|fault| words::fault(fault, &name, self.reduced))
+            .map(|fault| words::fault(fault, name, self.reduced))
             .collect();
         if !faults.is_empty() {
             for clash in faults {
@@ -107,11 +125,9 @@ impl Stage<'_, '_> {
             _ => outputs::solve(draft, self.effort, keep),
         };
         match solved {
-            Ok((draft, minimum)) => {
-                Some(finish(draft, name, self.choice.shape, minimum.products, minimum.bound))
-            }
+            Ok(solved) => Some(solved),
             Err((draft, unheld)) => {
-                self.clashes.push(words::unheld(&draft, &unheld, &name, self.reduced));
+                self.clashes.push(words::unheld(&draft, &unheld, name, self.reduced));
                 None
             }
         }

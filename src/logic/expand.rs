@@ -6,10 +6,14 @@
 //! literals only where a rule is broken, so every minimal set is met; each literal must keep some rule of its own, which
 //! prunes nearly everything else [Nowick & Dill 1995 shrink prime implicants to the same end].
 //!
+//! Over few variables all sets of literals are struck out at once, a bit for each, see
+//! [`subsets`](crate::logic::subsets): v·2^v/64 operations on words for v variables.
+//!
 //! Exact. The number of maximal products can be exponential in the variables (Dunham & Fridshal 1959); the time is about
 //! proportional to their number times the number of minimal rules.
 
 use crate::logic::cubes::join_of;
+use crate::logic::subsets::{Family, MOST};
 use crate::logic::values::{Cube, Privileged};
 
 /// What a product must not do.
@@ -23,7 +27,6 @@ pub(crate) struct Rules<'r> {
 
 impl Rules<'_> {
     /// Whether a product is allowed.
-    #[cfg(test)]
     pub(crate) fn allow(&self, product: Cube) -> bool {
         self.off.iter().all(|&o| !product.meets(o))
             && self.privileged.iter().all(|p| !product.meets(p.cube) || product.holds(p.start))
@@ -58,7 +61,7 @@ impl Rules<'_> {
     }
 }
 
-/// The scratch memory of an expansion, kept between calls.
+/// The scratch memory of expansions, kept between calls.
 #[derive(Debug, Default)]
 pub(crate) struct Expander {
     /// Minimal sets of literals of which one must be kept.
@@ -69,6 +72,8 @@ pub(crate) struct Expander {
     kept: Vec<u32>,
     /// Nodes of the search.
     nodes: u64,
+    /// For few variables: families of sets of dropped literals.
+    dense: Option<Box<[Family; 4]>>,
 }
 
 impl Expander {
@@ -77,6 +82,58 @@ impl Expander {
     ///
     /// The seed must itself lie in an allowed product, see [`Rules::closure`]; otherwise nothing is appended.
     pub(crate) fn expand(
+        &mut self,
+        seed: Cube,
+        rules: Rules<'_>,
+        limit: u64,
+        products: &mut Vec<Cube>,
+    ) -> Option<u64> {
+        let span = 32 - seed.care.leading_zeros();
+        if span as usize <= MOST {
+            self.all_at_once(seed, rules, products)
+        } else {
+            self.one_by_one(seed, rules, limit, products)
+        }
+    }
+
+    /// For few variables: of all sets of dropped literals, strikes those that break a rule, and keeps the largest.
+    fn all_at_once(&mut self, seed: Cube, rules: Rules<'_>, products: &mut Vec<Cube>) -> Option<u64> {
+        let span = (32 - seed.care.leading_zeros()) as usize;
+        let [allowed, broken, near, scratch] =
+            &mut **self.dense.get_or_insert_with(|| Box::new(std::array::from_fn(|_| Family::new(MOST))));
+        broken.reset(span);
+        for o in rules.off {
+            broken.insert(seed.care & o.care & (seed.ones ^ o.ones));
+        }
+        broken.close_upward(seed.care);
+        for p in rules.privileged {
+            let far = seed.care & (seed.ones ^ p.start);
+            if far != 0 {
+                // Broken where all of the near literals are dropped, but not all of the far ones.
+                near.reset(span);
+                near.insert(far & p.cube.care);
+                near.close_upward(seed.care);
+                allowed.reset(span);
+                allowed.insert(far);
+                allowed.close_upward(seed.care);
+                near.subtract(allowed);
+                broken.join(near);
+            }
+        }
+        allowed.reset(span);
+        allowed.insert(seed.care);
+        allowed.close_downward(seed.care);
+        allowed.subtract(broken);
+        allowed.keep_maximal(seed.care, scratch);
+        products.extend(allowed.members().map(|dropped| {
+            let care = seed.care & !dropped;
+            Cube { care, ones: seed.ones & care }
+        }));
+        Some(1)
+    }
+
+    /// For any number of variables: searches for the minimal sets of kept literals.
+    fn one_by_one(
         &mut self,
         seed: Cube,
         rules: Rules<'_>,
@@ -93,9 +150,8 @@ impl Expander {
         }
         for p in rules.privileged {
             let far = seed.care & (seed.ones ^ p.start);
-            let near = far & p.cube.care;
             if far != 0 {
-                self.fences.push((near, far));
+                self.fences.push((far & p.cube.care, far));
             }
         }
         self.blocks.sort_unstable_by_key(|b| (b.count_ones(), *b));
@@ -226,6 +282,10 @@ mod tests {
             let mut found = Vec::new();
             expander.expand(start, rules, 1 << 20, &mut found).expect("small");
             found.sort_unstable();
+            let mut other = Vec::new();
+            expander.one_by_one(start, rules, 1 << 20, &mut other).expect("small");
+            other.sort_unstable();
+            assert_eq!(found, other);
             let expected = by_exhaustion(start, rules);
             fenced += usize::from(expected != by_exhaustion(start, Rules { off: &off, privileged: &[] }));
             assert_eq!(found, expected);

@@ -13,8 +13,9 @@ use crate::logic::table::Table;
 use crate::logic::values::{Cube, Target};
 use crate::project::choices::Shape;
 
-/// Minimisations tried for one output.
+/// Minimisations tried for one output, and steps spent on them.
 const TRIALS: usize = 48;
+const STEPS: u64 = 20_000;
 
 /// The draft of an output with its choices settled, and its minimum.
 pub(crate) fn settle(
@@ -35,8 +36,18 @@ pub(crate) fn settle(
     for &i in &choices {
         open[i] = Value::Free;
     }
-    let mut search =
-        Search { table, output, shape, mask, choices: &choices, effort, keep, trials: 0, best: None };
+    let mut search = Search {
+        table,
+        output,
+        shape,
+        mask,
+        choices: &choices,
+        effort,
+        keep,
+        until: effort.left().saturating_sub(STEPS),
+        trials: 0,
+        best: None,
+    };
     search.node(open, Some(early));
     match search.best {
         Some((_, draft, minimum)) => Ok((draft, minimum)),
@@ -81,6 +92,7 @@ struct Search<'s, 'e> {
     choices: &'s [usize],
     effort: &'s Effort<'e>,
     keep: u64,
+    until: u64,
     trials: usize,
     best: Option<(Price, Draft, Minimum)>,
 }
@@ -88,7 +100,7 @@ struct Search<'s, 'e> {
 impl Search<'_, '_> {
     /// Minimises with some choices open. `early` is the draft with all of them early, to be tried before any branching.
     fn node(&mut self, values: Vec<Value>, early: Option<Draft>) {
-        if self.trials >= TRIALS {
+        if self.trials >= TRIALS || self.trials > 0 && self.effort.left() <= self.until {
             return;
         }
         self.trials += 1;
@@ -134,7 +146,7 @@ impl Search<'_, '_> {
                 .into_iter()
                 .find(|&i| open[i] == Value::Free && settled[i] != Value::Free)?;
             let both = settled[span.start] == held && settled[span.end] == held;
-            let cube: Cube = self.table.cube(span);
+            let cube: Cube = self.table.cube(span.start, span.end);
             (both && !minimum.products.iter().any(|p| p.contains(cube))).then_some(choice)
         })
     }

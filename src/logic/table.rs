@@ -109,9 +109,9 @@ impl Table {
         self.points.binary_search(&point).ok()
     }
 
-    /// The cube of a span.
-    pub(crate) fn cube(&self, span: &Span) -> Cube {
-        Cube::spanned(self.points[span.start], self.points[span.end], self.variables())
+    /// The cube that two points span, by their indices.
+    pub(crate) fn cube(&self, a: usize, b: usize) -> Cube {
+        Cube::spanned(self.points[a], self.points[b], self.variables())
     }
 
     /// All points of the encoded table, of cells with outputs, and of the cubes that moves pass.

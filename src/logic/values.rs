@@ -162,6 +162,8 @@ pub struct Function {
     /// literals is the opposite constant.
     pub products: Vec<Product>,
     /// Whether fewer products, and with as many products fewer literals, are impossible. `lower` is a bound on the products.
+    /// With products shared: whether fewer different products, and with as many fewer literals, are impossible for all
+    /// functions together.
     pub bound: Bound,
 }
 

@@ -2,4 +2,5 @@
 
 pub mod clique;
 pub mod cover;
+mod cyclic;
 pub mod sat;
