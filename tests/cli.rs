@@ -126,7 +126,7 @@ fn files_that_cannot_be_read() {
     fs::File::create(&large).and_then(|f| f.set_len(1 << 40)).expect("a sparse file");
     let start = Instant::now();
     refused(&command("derive", &large, &[]), "too large");
-    assert!(start.elapsed() < Duration::from_secs(1));
+    assert!(start.elapsed() < Duration::from_secs(20));
     // A file without end and without a length.
     if Path::new("/dev/zero").exists() {
         refused(&command("derive", Path::new("/dev/zero"), &[]), "too large");

@@ -10,11 +10,11 @@ const PUMP: &str = include_str!("data/project/pump.ron");
 const EVERYTHING: &str = include_str!("data/project/everything.ron");
 const BY_HAND: &str = include_str!("data/project/by_hand.ron");
 
-/// The error of a file that must be refused, and quickly.
+/// The error of a file that must be refused without a cost that explodes: the bound is no measurement, machines are shared.
 fn refused(bytes: &[u8]) -> ReadError {
     let start = Instant::now();
     let error = read(bytes).expect_err("must be refused");
-    assert!(start.elapsed() < Duration::from_secs(1), "took {:?}: {error}", start.elapsed());
+    assert!(start.elapsed() < Duration::from_secs(20), "took {:?}: {error}", start.elapsed());
     assert!(error.text.len() < 400, "too long to read: {error}");
     error
 }
@@ -242,7 +242,7 @@ fn the_limits_themselves_are_allowed() {
     assert_eq!(fits(&project), Ok(()));
     let start = Instant::now();
     assert_eq!(read(write(&project).as_bytes()), Ok(project));
-    assert!(start.elapsed() < Duration::from_secs(1), "{:?}", start.elapsed());
+    assert!(start.elapsed() < Duration::from_secs(20), "{:?}", start.elapsed());
 }
 
 #[test]
