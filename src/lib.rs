@@ -27,6 +27,8 @@
 pub mod base;
 pub mod codes;
 pub mod design;
+pub mod drawing;
+pub mod explain;
 pub mod gates;
 pub mod handoff;
 pub mod logic;
@@ -35,3 +37,5 @@ pub mod project;
 pub mod proof;
 pub mod search;
 pub mod spec;
+#[cfg(feature = "window")]
+pub mod window;

@@ -12,7 +12,7 @@ mod terminal;
 #[path = "main/usage.rs"]
 mod usage;
 
-use std::path::Path;
+use std::path::{Path, PathBuf};
 use std::process::ExitCode;
 
 use stillgate::base::{Finding, Level, Progress};
@@ -34,6 +34,7 @@ const GRACE: u64 = 200_000;
 
 fn main() -> ExitCode {
     let outcome = usage::read(std::env::args_os().skip(1).collect()).and_then(|request| match request {
+        Request::Window(file) => window(file),
         Request::Print(text) => print(text, true),
         Request::Check(path) => check(&path),
         Request::Derive(path, options) => derive(&path, &options),
@@ -47,6 +48,16 @@ fn main() -> ExitCode {
             ExitCode::from(UNUSABLE)
         }
     }
+}
+
+#[cfg(feature = "window")]
+fn window(file: Option<PathBuf>) -> Result<bool, String> {
+    stillgate::window::run(file).map(|()| true)
+}
+
+#[cfg(not(feature = "window"))]
+fn window(_: Option<PathBuf>) -> Result<bool, String> {
+    Err("this build has no window; what works: check FILE, derive FILE, compare FILE (see --help)".to_owned())
 }
 
 /// Prints text; `good` is handed through. A full disk is worth a message, and no success.

@@ -98,8 +98,7 @@ fn help_and_version_go_to_standard_output() {
 
 #[test]
 fn wrong_usage_is_told_in_one_line() {
-    refused(&run::<&str>([]), "no window yet");
-    refused(&run(["pump.ron"]), "no window yet");
+    refused(&run(["pump.ron", "derive"]), "one too many");
     refused(&run(["export", "pump.ron", "--to", "out"]), "cannot export yet");
     refused(&run(["drive"]), "unknown command drive");
     refused(&run(["--fast"]), "unknown option --fast");

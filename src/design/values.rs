@@ -2,7 +2,7 @@
 
 use std::sync::Arc;
 
-use crate::base::{Finding, Level};
+use crate::base::{Code, Column, Finding, Level, Row};
 use crate::codes::values::Coded;
 use crate::gates::values::Cost;
 use crate::logic::values::Equations;
@@ -58,4 +58,33 @@ pub struct Alternative {
     pub shape: Shape,
     /// What came of it.
     pub design: Design,
+}
+
+/// Something that can be selected, in any view.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
+pub enum Pick {
+    /// A row of the primitive table.
+    Row(Row),
+    /// A cell of the primitive table.
+    Cell(Row, Column),
+    /// Two rows: a square of the implication table, a line of the merger diagram.
+    Pair(Row, Row),
+    /// A maximal compatible, by index.
+    Compatible(usize),
+    /// A row of the reduced table.
+    Merged(Row),
+    /// A cell of the reduced table.
+    MergedCell(Row, Column),
+    /// A code.
+    Code(Code),
+    /// An entry of the encoded table.
+    Entry(Code, Column),
+    /// A function, by index.
+    Function(usize),
+    /// A product of a function.
+    Product(usize, usize),
+    /// A point of a Karnaugh map: function and value of its variables.
+    Point(usize, u32),
+    /// A move of the reduced table, by index.
+    Move(usize),
 }

@@ -9,7 +9,7 @@ mod review;
 mod words;
 
 pub use comparison::comparison;
-pub use notation::{Notation, right_side};
+pub use notation::{Notation, equations_text, right_side, term};
 pub use plain::plain;
 pub use record::{SCHEMA, record};
 pub use review::review;

@@ -6,7 +6,7 @@ use crate::logic::values::{Cube, Equations, Function};
 use crate::project::choices::Shape;
 
 /// How equations are written.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, Default)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, Default, serde::Serialize, serde::Deserialize)]
 pub enum Notation {
     /// `D·G + G'·y1`.
     #[default]
@@ -112,4 +112,10 @@ pub fn joint(notation: Notation, shape: Shape) -> &'static str {
 /// The right side of a function's equation on one line.
 pub fn right_side(notation: Notation, equations: &Equations, function: &Function) -> String {
     terms(notation, equations, function).join(joint(notation, equations.shape))
+}
+
+/// All functions, a line each, for a file or the clipboard.
+pub fn equations_text(equations: &Equations, notation: Notation) -> String {
+    let line = |f: &Function| format!("{} = {}\n", f.name, right_side(notation, equations, f));
+    equations.functions.iter().map(line).collect()
 }

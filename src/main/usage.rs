@@ -11,6 +11,7 @@ use stillgate::project::{Choices, Form, Method, OutputStyle, Shape};
 pub const HELP: &str = "\
 stillgate derives asynchronous controllers: from a flow table to proved, hazard-free equations.
 
+  stillgate [FILE]                   the window, on FILE or on a sample
   stillgate check FILE               what is wrong with the table, and what it leaves open
   stillgate derive FILE [options]    the whole design as text
   stillgate compare FILE [options]   every method, form and shape side by side
@@ -37,6 +38,8 @@ Exit: 0 derived, and the proof holds; 1 an error in the design, or it cannot be 
 /// What to do.
 #[derive(Debug, PartialEq)]
 pub enum Request {
+    /// Open the window, on this file or on a sample.
+    Window(Option<PathBuf>),
     /// Print this text and end well.
     Print(&'static str),
     /// Findings of a file.
@@ -89,7 +92,7 @@ const MOST_COVERS: usize = 1000;
 pub fn read(arguments: Vec<OsString>) -> Result<Request, String> {
     let mut words = Words(arguments.into_iter());
     let Some(first) = words.0.next() else {
-        return Err(no_window());
+        return Ok(Request::Window(None));
     };
     let command = match first.to_str() {
         Some("--help" | "-h" | "help") => return Ok(Request::Print(HELP)),
@@ -98,7 +101,7 @@ pub fn read(arguments: Vec<OsString>) -> Result<Request, String> {
         Some("export") => return Err(NO_EXPORT.to_owned()),
         Some(option) if option.starts_with('-') => return Err(unknown("option", option)),
         Some(word) if !word.contains(['.', '/', '\\']) => return Err(unknown("command", word)),
-        _ => return Err(no_window()),
+        _ => return window(first, words),
     };
     let mut options = Options::default();
     let mut file: Option<PathBuf> = None;
@@ -132,8 +135,16 @@ const VERSION: &str = concat!("stillgate ", env!("CARGO_PKG_VERSION"), "\n");
 const NO_EXPORT: &str =
     "this build cannot export yet; derive FILE prints the design, derive FILE --json the record";
 
-fn no_window() -> String {
-    "this build has no window yet; what works: check FILE, derive FILE, compare FILE (see --help)".to_owned()
+fn window(file: OsString, mut words: Words) -> Result<Request, String> {
+    match words.0.next() {
+        None => Ok(Request::Window(Some(file.into()))),
+        Some(extra) => {
+            let extra = plain(&extra.to_string_lossy());
+            Err(format!(
+                "{extra} is one too many: the window opens on one file, the batch commands come first"
+            ))
+        }
+    }
 }
 
 fn unknown(kind: &str, word: &str) -> String {
@@ -241,6 +252,8 @@ mod tests {
     #[test]
     fn commands_and_options() {
         assert_eq!(given(&["check", "a.ron"]), Ok(Request::Check("a.ron".into())));
+        assert_eq!(given(&[]), Ok(Request::Window(None)));
+        assert_eq!(given(&["a.ron"]), Ok(Request::Window(Some("a.ron".into()))));
         let Ok(Request::Derive(file, options)) = given(&[
             "derive",
             "--codes=one-hot",
@@ -264,8 +277,7 @@ mod tests {
     #[test]
     fn what_is_wrong_is_said() {
         for (words, part) in [
-            (&[][..], "no window yet"),
-            (&["a.ron"][..], "no window yet"),
+            (&["a.ron", "derive"][..], "one too many"),
             (&["export", "a.ron"], "cannot export yet"),
             (&["draw"], "unknown command draw"),
             (&["--fast"], "unknown option --fast"),

@@ -55,12 +55,22 @@ impl History {
     /// As [`Edit::apply`]; then nothing has changed.
     pub fn apply(&mut self, edit: &Edit) -> Result<(), EditError> {
         let next = edit.apply(&self.present)?;
-        if next != *self.present {
-            let before = std::mem::replace(&mut self.present, Arc::new(next));
-            self.remember(Entry { name: edit.name(), project: before });
-            self.future.clear();
-            self.compare();
+        self.advance(next, edit.name());
+        Ok(())
+    }
+
+    /// Makes several edits in one go, with one name and one entry: what a dialog changed, or what a command does to each row of
+    /// a range. Either all are made or none.
+    ///
+    /// # Errors
+    ///
+    /// As [`Edit::apply`]; then nothing has changed.
+    pub fn apply_all(&mut self, edits: &[Edit], name: &str) -> Result<(), EditError> {
+        let mut next = Project::clone(&self.present);
+        for edit in edits {
+            next = edit.apply(&next)?;
         }
+        self.advance(next, name.to_owned());
         Ok(())
     }
 
@@ -142,6 +152,15 @@ impl History {
         let former = std::mem::replace(&mut self.present, project);
         self.compare();
         former
+    }
+
+    fn advance(&mut self, next: Project, name: String) {
+        if next != *self.present {
+            let before = std::mem::replace(&mut self.present, Arc::new(next));
+            self.remember(Entry { name, project: before });
+            self.future.clear();
+            self.compare();
+        }
     }
 
     fn remember(&mut self, entry: Entry) {
@@ -288,6 +307,22 @@ mod tests {
         assert_eq!((&history.project().layout, history.dirty()), (&layout, false));
         history.redo();
         assert_eq!((&history.project().layout, history.project().title.as_str()), (&layout, "one"));
+    }
+
+    #[test]
+    fn several_edits_in_one_go_are_one_entry_and_all_or_nothing() {
+        let mut history = History::new(Project::new(vec!["a".into()], vec!["q".into()]));
+        let start = Arc::clone(history.project());
+        let row = |name: &str| RowEntry { name: name.into(), ..RowEntry::default() };
+        let both = [Edit::InsertRow { at: 0, row: row("s") }, Edit::InsertRow { at: 1, row: row("t") }];
+        history.apply_all(&both, "Two rows").expect("both can be made");
+        assert_eq!(history.project().rows.len(), 2);
+        assert_eq!(history.undo().as_deref(), Some("Two rows"));
+        assert_eq!(history.project(), &start);
+        let bad = [Edit::InsertRow { at: 0, row: row("s") }, Edit::DeleteRow { row: 7 }];
+        assert!(history.apply_all(&bad, "Half").is_err());
+        assert_eq!(history.project(), &start);
+        assert_eq!(history.undo_names().count(), 0);
     }
 
     #[test]
